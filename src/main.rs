@@ -1,0 +1,3 @@
+//! The command `crestfall`.
+
+fn main() {}

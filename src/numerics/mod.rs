@@ -1,0 +1,3 @@
+//! Numerical tools that know nothing of rides.
+
+pub mod lowpass;

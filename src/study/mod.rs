@@ -1,0 +1,1 @@
+//! All cases of a study.
