@@ -161,7 +161,7 @@ impl<'a> Runner<'a> {
             law: &self.law,
             edge_m: self.edge_m,
         };
-        let steps = RefCell::new(Vec::new());
+        let steps = RefCell::new(vec![self.time_s]);
         let system = Rolling {
             gaps: &gaps,
             steps: &steps,
@@ -563,7 +563,11 @@ impl System<f64, Vector2<f64>> for Rolling<'_> {
     }
 
     fn solout(&mut self, t: f64, y: &Vector2<f64>, _dy: &Vector2<f64>) -> bool {
-        self.steps.borrow_mut().push(t);
-        self.steps.borrow().len() > 1 && self.gaps.any(y.x, y.y)
+        let mut steps = self.steps.borrow_mut();
+        let moved = steps.last().is_none_or(|&last| t > last);
+        if moved {
+            steps.push(t);
+        }
+        moved && self.gaps.any(y.x, y.y)
     }
 }
