@@ -81,6 +81,8 @@ pub struct Ignored {
     pub duration_s: f64,
     /// Instant of the furthest load, s.
     pub time_s: f64,
+    /// Load over limit of the worst of the windows, as if it were judged.
+    pub utilisation: f64,
 }
 
 /// One rule held against one record.

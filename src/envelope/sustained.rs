@@ -203,6 +203,7 @@ impl Clock {
             peak_g: signal.as_felt(signal.at(peak)),
             duration_s: union.outer.duration_s,
             time_s: self.time_s(peak as f64),
+            utilisation: union.worst.utilisation,
         }
     }
 }
