@@ -1,12 +1,32 @@
 //! The motion: one train let go on one spine under one scenario.
+//!
+//! Lagrange's equation for one coordinate, the leading axle's station q
+//! (Goldstein, *Classical Mechanics*, sec. 1.4): M q̈ + ½ M′ v² = −V′ + Q. It knows
+//! neither seats' loads nor limits.
 
-use crate::input::{Goal, Scenario};
+mod air;
+mod bodies;
+mod equation;
+mod history;
+mod ledger;
+mod run;
+mod zone;
+
+pub use air::{density_kg_m3, wind_m_s};
+pub use history::{History, Samples, State};
+pub use ledger::Ledger;
+pub use run::{Settings, simulate, simulate_with};
+
+use crate::input::{Goal, Scenario, Train};
 use crate::train::Poses;
 
 /// One run to be made.
+#[derive(Clone, Copy)]
 pub struct Ride<'a> {
     /// The train on its spine.
     pub poses: &'a Poses,
+    /// The masses of the same train.
+    pub train: &'a Train,
     /// The condition.
     pub scenario: &'a Scenario,
     /// Where it is meant to end.
@@ -20,13 +40,13 @@ pub struct Ride<'a> {
 /// How a run ended.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum RunEnd {
-    /// As it was meant to.
+    /// As it was meant to, without ever reversing.
     Completed,
-    /// Past the finish zone.
+    /// Past the finish.
     Overran,
     /// Held at its first standstill outside the finish.
     Stalled,
-    /// Reversed at least once.
+    /// Reversed at least once, whatever followed.
     RolledBack,
     /// Still moving at the time limit.
     TimeLimit,
@@ -41,75 +61,19 @@ pub struct Reversal {
     pub station_m: f64,
 }
 
-/// Energy of a run, J; works are done on the train, losses negative.
-#[derive(Clone, Debug, PartialEq)]
-pub struct Ledger {
-    /// Kinetic and potential at the start.
-    pub start_j: f64,
-    /// At the end.
-    pub end_j: f64,
-    /// Running, side and bearings.
-    pub rolling_j: f64,
-    /// Air.
-    pub air_j: f64,
-    /// By zone, in file order.
-    pub zones_j: Vec<(String, f64)>,
-    /// end − start − all works.
-    pub closure_j: f64,
-    /// Largest minus smallest kinetic energy plus the sum of the absolute works.
-    pub turned_over_j: f64,
-}
-
 /// Why a run could not be made.
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
 pub enum MotionError {
     /// The integrator gave up.
-    #[error("the integration stopped at {time_s:.6} s: {reason}")]
+    #[error(
+        "the integration stopped at {time_s:.6} s with the leading axle at {station_m:.3} m: {reason}"
+    )]
     Integration {
         /// s.
         time_s: f64,
+        /// Leading axle, m (q).
+        station_m: f64,
         /// The integrator's words.
         reason: String,
     },
-}
-
-/// One run.
-pub struct History {
-    /// How it ended.
-    pub end: RunEnd,
-    /// s.
-    pub duration_s: f64,
-    /// Leading axle at the end, m (q).
-    pub end_station_m: f64,
-    /// In order of time.
-    pub reversals: Vec<Reversal>,
-    /// The books.
-    pub energy: Ledger,
-}
-
-/// A run at a uniform rate: samples at i/rate from 0 to before the end.
-pub struct Samples {
-    /// Hz.
-    pub rate_hz: f64,
-    /// Leading axle, m (q).
-    pub train_station_m: Vec<f64>,
-    /// m/s.
-    pub speed_m_s: Vec<f64>,
-    /// m/s².
-    pub acceleration_m_s2: Vec<f64>,
-}
-
-/// Runs a train.
-///
-/// # Errors
-/// [`MotionError`] where the equation of motion cannot be integrated.
-pub fn simulate(_ride: &Ride<'_>) -> Result<History, MotionError> {
-    todo!()
-}
-
-impl History {
-    /// The run at a uniform rate.
-    pub fn samples(&self, _rate_hz: f64) -> Samples {
-        todo!()
-    }
 }

@@ -1,10 +1,14 @@
-//! The train: cars on axles chained along the spine, as functions of the leading axle's station.
+//! The train: cars on axles chained along the spine, as functions of the leading axle's station q.
+//!
+//! Poses are worked out on a grid in q once per track and train, with exact derivatives at the
+//! nodes, and run as quintics in between ([`poses`]).
 
-use crate::input;
-use crate::spine::Spine;
+mod chain;
+mod layout;
+mod poses;
 
-/// Poses of all cars of a train on a spine.
-pub struct Poses {}
+pub use layout::{Layout, occupied};
+pub use poses::{AxlePose, CarPose, Instant, Poses, PosesSettings};
 
 /// Why a train cannot be set on a spine.
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
@@ -18,26 +22,26 @@ pub enum PoseError {
         track_m: f64,
     },
     /// No place behind an axle at the right straight distance.
-    #[error("no place for axle {axle} behind the one at station {station_m:.3} m")]
+    #[error(
+        "the track bends too sharply for axle {axle}: nothing lies {spacing_m:.3} m behind the axle \
+         ahead of it at station {station_m:.3} m"
+    )]
     NoPlaceForAxle {
         /// From 1 at the front.
         axle: usize,
+        /// Straight distance to the axle ahead, m.
+        spacing_m: f64,
         /// Station of the axle ahead, m.
         station_m: f64,
     },
-}
-
-impl Poses {
-    /// Sets a train on a spine.
-    ///
-    /// # Errors
-    /// [`PoseError`] where the chain of axles cannot be laid along the spine.
-    pub fn new(_spine: &Spine, _train: &input::Train) -> Result<Self, PoseError> {
-        todo!()
-    }
-    /// Stations of the leading axle for which the whole train is on the track, m: first and last;
-    /// unbounded on a closed spine.
-    pub fn stations_m(&self) -> (f64, f64) {
-        todo!()
-    }
+    /// The tables would need too much memory.
+    #[error(
+        "the poses of this train on this track need {needed_mb} MB, the bound is {bound_mb} MB"
+    )]
+    TooLarge {
+        /// Megabytes needed.
+        needed_mb: u64,
+        /// Megabytes allowed.
+        bound_mb: u64,
+    },
 }

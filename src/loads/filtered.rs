@@ -1,0 +1,36 @@
+//! Loads after an envelope's filter.
+
+use super::AxesG;
+use crate::input::Filter;
+use crate::numerics::lowpass::Butterworth;
+
+/// Three axes after a filter.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Filtered {
+    /// Hz.
+    pub rate_hz: f64,
+    /// The filter's delay at zero frequency, s.
+    pub delay_s: f64,
+    /// Filtered loads.
+    pub axes_g: AxesG,
+}
+
+/// Runs an envelope's filter over three axes. A corner is below half of `rate_hz`.
+pub fn filtered(axes_g: &AxesG, rate_hz: f64, filter: Filter) -> Filtered {
+    let mut axes_g = axes_g.clone();
+    let delay_s = match filter {
+        Filter::None => 0.0,
+        Filter::Butterworth { poles, corner_hz } => {
+            let lowpass = Butterworth::new(poles, corner_hz, rate_hz);
+            axes_g
+                .iter_mut()
+                .for_each(|axis| lowpass.run_from_steady(axis));
+            lowpass.delay_s()
+        }
+    };
+    Filtered {
+        rate_hz,
+        delay_s,
+        axes_g,
+    }
+}

@@ -1,0 +1,124 @@
+//! Functions that are a polynomial of degree 5 on each interval of a grid.
+
+/// The nodes between which polynomials run, with a fast way from x to its interval.
+#[derive(Clone, Debug)]
+pub struct Grid {
+    nodes: Vec<f64>,
+    /// Interval of the left edge of each bucket of equal width.
+    buckets: Vec<u32>,
+    per_unit: f64,
+}
+
+impl Grid {
+    /// A grid over strictly increasing nodes, at least two.
+    pub fn new(nodes: Vec<f64>) -> Self {
+        let (first, last) = (nodes[0], nodes[nodes.len() - 1]);
+        let count = 2 * nodes.len();
+        let per_unit = count as f64 / (last - first);
+        let mut interval = 0;
+        let buckets = (0..count)
+            .map(|bucket| {
+                let edge = first + bucket as f64 / per_unit;
+                while interval + 2 < nodes.len() && nodes[interval + 1] <= edge {
+                    interval += 1;
+                }
+                interval as u32
+            })
+            .collect();
+        Self {
+            nodes,
+            buckets,
+            per_unit,
+        }
+    }
+
+    /// The nodes.
+    pub fn nodes(&self) -> &[f64] {
+        &self.nodes
+    }
+
+    /// The interval that holds x (the first or last one beyond the ends) and x minus its left node.
+    pub fn locate(&self, x: f64) -> (usize, f64) {
+        let last = self.nodes.len() - 2;
+        let bucket =
+            ((x - self.nodes[0]) * self.per_unit).clamp(0.0, self.buckets.len() as f64 - 1.0);
+        let mut interval = self.buckets[bucket as usize] as usize;
+        while interval < last && self.nodes[interval + 1] <= x {
+            interval += 1;
+        }
+        while interval > 0 && self.nodes[interval] > x {
+            interval -= 1;
+        }
+        (interval, x - self.nodes[interval])
+    }
+}
+
+/// `N` functions on the same intervals: Taylor coefficients at each left node.
+#[derive(Clone, Debug, Default)]
+pub struct Quintic<const N: usize> {
+    coefficients: Vec<[[f64; N]; 6]>,
+}
+
+/// A value with its first and second derivative, for `N` functions.
+pub type Jets<const N: usize> = [[f64; N]; 3];
+
+impl<const N: usize> Quintic<N> {
+    /// No interval yet.
+    pub fn new() -> Self {
+        Self {
+            coefficients: Vec::new(),
+        }
+    }
+
+    /// Whether there is no interval yet.
+    pub fn is_empty(&self) -> bool {
+        self.coefficients.is_empty()
+    }
+
+    /// Adds the next interval by its Taylor coefficients at the left node.
+    pub fn push_taylor(&mut self, coefficients: [[f64; N]; 6]) {
+        self.coefficients.push(coefficients);
+    }
+
+    /// Adds the next interval, of width `h`, from values and derivatives at its ends.
+    ///
+    /// Two-point Hermite interpolation (Davis, *Interpolation and Approximation*, sec. 2.5);
+    /// error h⁶ f⁽⁶⁾/46080 in the value, O(h⁴) in the second derivative.
+    pub fn push_hermite(&mut self, h: f64, left: &Jets<N>, right: &Jets<N>) {
+        let mut c = [[0.0; N]; 6];
+        for i in 0..N {
+            let (f, d, a) = (left[0][i], left[1][i], 0.5 * left[2][i]);
+            // What the right end has beyond the Taylor polynomial of the left end, over powers of h.
+            let value = (right[0][i] - f - h * (d + h * a)) / (h * h * h);
+            let slope = (right[1][i] - d - 2.0 * h * a) / (h * h);
+            let bend = (right[2][i] - 2.0 * a) / h;
+            c[0][i] = f;
+            c[1][i] = d;
+            c[2][i] = a;
+            c[3][i] = 10.0 * value - 4.0 * slope + 0.5 * bend;
+            c[4][i] = (-15.0 * value + 7.0 * slope - bend) / h;
+            c[5][i] = (6.0 * value - 3.0 * slope + 0.5 * bend) / (h * h);
+        }
+        self.coefficients.push(c);
+    }
+
+    /// Values and two derivatives at `d` beyond the left node of an interval.
+    pub fn jets(&self, interval: usize, d: f64) -> Jets<N> {
+        let c = &self.coefficients[interval];
+        let mut out = [[0.0; N]; 3];
+        for i in 0..N {
+            let (c3, c4, c5) = (c[3][i], c[4][i], c[5][i]);
+            out[0][i] = c[0][i] + d * (c[1][i] + d * (c[2][i] + d * (c3 + d * (c4 + d * c5))));
+            out[1][i] =
+                c[1][i] + d * (2.0 * c[2][i] + d * (3.0 * c3 + d * (4.0 * c4 + d * 5.0 * c5)));
+            out[2][i] = 2.0 * c[2][i] + d * (6.0 * c3 + d * (12.0 * c4 + d * 20.0 * c5));
+        }
+        out
+    }
+
+    /// Third derivatives at `d` beyond the left node of an interval.
+    pub fn third(&self, interval: usize, d: f64) -> [f64; N] {
+        let c = &self.coefficients[interval];
+        std::array::from_fn(|i| 6.0 * c[3][i] + d * (24.0 * c[4][i] + d * 60.0 * c[5][i]))
+    }
+}
