@@ -5,7 +5,7 @@ use super::plan::{CaseId, Design, Plan};
 use crate::envelope::{self, Judgement, Outcome, RunState};
 use crate::input::{GravityTerm, Seat};
 use crate::loads::{self, AxesG, CarLoads};
-use crate::motion::{self, History, Ledger, RunEnd, Samples};
+use crate::motion::{self, History, RunEnd, Samples};
 
 /// Largest closure error of a run's books that its loads may rest on, part of the energy turned over.
 const LARGEST_CLOSURE: f64 = 1e-6;
@@ -34,7 +34,7 @@ pub(super) fn assess(plan: &Plan<'_>, id: CaseId) -> (Case, Vec<Finding>) {
     (case, findings)
 }
 
-fn summary(history: &History, samples: &Samples) -> Run {
+fn summary(history: &History<'_>, samples: &Samples) -> Run {
     Run {
         end: history.end,
         duration_s: history.duration_s,
@@ -68,32 +68,49 @@ fn unmade_seats(plan: &Plan<'_>, id: CaseId, reason: &str) -> Vec<SeatResult> {
 }
 
 /// Whether what a run shows can be called inside, and why not.
-fn run_state(history: &History) -> RunState {
-    let because = |how: String| RunState::Incomplete(format!("the run did not complete: {how}"));
+fn run_state(history: &History<'_>, samples: &Samples) -> RunState {
+    let whole = not_completed(history)
+        .or_else(|| books_do_not_close(history))
+        .or_else(|| samples_are_missing(history, samples));
+    whole.map_or(RunState::Complete, RunState::Incomplete)
+}
+
+fn not_completed(history: &History<'_>) -> Option<String> {
     let at = format!("at {:.1} m", history.end_station_m);
-    match history.end {
-        RunEnd::Completed => books_state(&history.energy),
-        RunEnd::Overran => because(format!("overran the finish, ended {at}")),
-        RunEnd::Stalled => because(format!("stalled {at}")),
-        RunEnd::TimeLimit => because(format!(
-            "still under way {at} after {:.0} s",
-            history.duration_s
-        )),
-        RunEnd::RolledBack => because(match history.reversals.first() {
+    let how = match history.end {
+        RunEnd::Completed => return None,
+        RunEnd::Overran => format!("overran the finish, ended {at}"),
+        RunEnd::Stalled => format!("stalled {at}"),
+        RunEnd::TimeLimit => format!("still under way {at} after {:.0} s", history.duration_s),
+        RunEnd::RolledBack => match history.reversals.first() {
             Some(first) => format!("rolled back from {:.1} m", first.station_m),
             None => format!("rolled back, ended {at}"),
-        }),
-    }
+        },
+    };
+    Some(format!("the run did not complete: {how}"))
 }
 
 /// Written so that books that hold no number do not close.
-fn books_state(energy: &Ledger) -> RunState {
+fn books_do_not_close(history: &History<'_>) -> Option<String> {
+    let energy = &history.energy;
     if energy.closure_j.abs() <= LARGEST_CLOSURE * energy.turned_over_j {
-        return RunState::Complete;
+        return None;
     }
-    RunState::Incomplete(format!(
+    Some(format!(
         "the energy of the run does not add up: {:.3e} J are missing of {:.3e} J turned over",
         energy.closure_j, energy.turned_over_j
+    ))
+}
+
+/// A record with a gap would tell wrong times and hide what lay in the gap.
+fn samples_are_missing(history: &History<'_>, samples: &Samples) -> Option<String> {
+    let expected = (history.duration_s * samples.rate_hz).ceil();
+    let found = samples.speed_m_s.len() as f64;
+    if (found - expected).abs() <= 1.0 {
+        return None;
+    }
+    Some(format!(
+        "the record of the run has {found} samples in place of {expected}"
     ))
 }
 
@@ -107,13 +124,14 @@ struct Judging<'a> {
 }
 
 impl<'a> Judging<'a> {
-    fn new(plan: &'a Plan<'a>, id: CaseId, history: &History) -> Self {
+    fn new(plan: &'a Plan<'a>, id: CaseId, history: &History<'_>) -> Self {
+        let samples = history.samples(plan.study.rate_hz);
         Self {
             plan,
             id,
             design: &plan.variants[id.variant],
-            samples: history.samples(plan.study.rate_hz),
-            state: run_state(history),
+            state: run_state(history, &samples),
+            samples,
         }
     }
 
@@ -235,7 +253,7 @@ impl SeatView<'_> {
     }
 
     fn result(&self, judgements: Vec<Judgement>) -> SeatResult {
-        let wrapped_m = |i: usize| self.judging.design.wrapped_m(self.station_m[i]);
+        let wrapped_m = |i: usize| self.judging.design.spine.wrapped_m(self.station_m[i]);
         SeatResult {
             car: self.car + 1,
             seat: self.seat.name.clone(),
@@ -258,7 +276,7 @@ impl SeatView<'_> {
     fn station_at(&self, time_s: f64) -> f64 {
         let rate_hz = self.judging.samples.rate_hz;
         let station_m = value_at(self.station_m, rate_hz, time_s);
-        self.judging.design.wrapped_m(station_m)
+        self.judging.design.spine.wrapped_m(station_m)
     }
 }
 

@@ -5,7 +5,7 @@ use std::collections::BTreeSet;
 use super::plan::{Design, Plan, seat_names};
 use super::selection::suggest;
 use crate::diagnostic::Diagnostic;
-use crate::input::{Envelope, Filter, Goal, Riders, Scenario, Train, Zone};
+use crate::input::{Envelope, Filter, Goal, Riders, Scenario, Zone};
 
 /// All mistakes of a plan.
 pub(super) fn check(plan: &Plan<'_>) -> Vec<Diagnostic> {
@@ -129,7 +129,7 @@ fn check_zone(zone: &Zone, design: &Design<'_>) -> Option<Diagnostic> {
 
 /// On a closed track a train must not reach into a zone with both its ends.
 fn check_overlap(zone: &Zone, zone_m: f64, design: &Design<'_>) -> Option<Diagnostic> {
-    let train_m = axle_span_m(&design.variant.train);
+    let train_m = design.poses.layout().length_m();
     let length_m = design.spine.length_m();
     if !design.spine.is_closed() || zone_m + train_m <= length_m {
         return None;
@@ -185,17 +185,4 @@ fn check_riders(scenario: &Scenario, design: &Design<'_>) -> Vec<Diagnostic> {
             suggest(message, &name, &known).at(&seat.place)
         })
         .collect()
-}
-
-/// Nominal distance from the first to the last axle, m.
-fn axle_span_m(train: &Train) -> f64 {
-    let (mut nose_m, mut first_m, mut last_m) = (0.0, f64::INFINITY, f64::NEG_INFINITY);
-    for car in &train.cars {
-        for axle_m in car.axles_m {
-            first_m = f64::min(first_m, nose_m + axle_m);
-            last_m = f64::max(last_m, nose_m + axle_m);
-        }
-        nose_m += car.length_m;
-    }
-    last_m - first_m
 }

@@ -128,6 +128,7 @@ impl<'a> Plan<'a> {
     pub(super) fn ride(&self, case: CaseId) -> Ride<'_> {
         Ride {
             poses: &self.variants[case.variant].poses,
+            train: &self.variants[case.variant].variant.train,
             scenario: self.scenarios[case.scenario],
             goal: &self.study.operation.goal,
             time_limit_s: self.study.operation.time_limit_s,
@@ -160,20 +161,6 @@ impl<'a> Design<'a> {
             poses,
             seats: cars.map(kept).collect(),
         })
-    }
-
-    /// A station brought into [0, L) on a closed track.
-    pub(super) fn wrapped_m(&self, station_m: f64) -> f64 {
-        if !self.spine.is_closed() {
-            return station_m;
-        }
-        let wrapped_m = station_m.rem_euclid(self.spine.length_m());
-        // The remainder of a hair below 0 rounds to the length itself.
-        if wrapped_m < self.spine.length_m() {
-            wrapped_m
-        } else {
-            0.0
-        }
     }
 }
 

@@ -65,7 +65,10 @@ impl CaseRecord<'_> {
                 .plan
                 .needs_excluded()
                 .then(|| self.loads(car, seats, GravityTerm::Excluded));
-            let wrapped = felt.station_m.iter().map(|&m| self.design.wrapped_m(m));
+            let wrapped = felt
+                .station_m
+                .iter()
+                .map(|&m| self.design.spine.wrapped_m(m));
             let station_m: Vec<f64> = wrapped.collect();
             for (index, seat) in seats.iter().enumerate() {
                 let felt_g = &felt.seats[index];
