@@ -55,6 +55,8 @@ pub struct Spell {
     pub peak_g: f64,
     /// Instant of the furthest load, s.
     pub peak_time_s: f64,
+    /// Sample of the record (its delay in it) that holds the furthest load.
+    pub peak_sample: usize,
     /// Limit for this duration, g.
     pub limit_g: f64,
     /// Load over limit, both counted from where the rule counts.

@@ -184,6 +184,7 @@ impl Clock {
             load_g: signal.as_felt(window.level),
             peak_g: signal.as_felt(signal.at(peak)),
             peak_time_s: self.time_s(peak as f64),
+            peak_sample: peak,
             limit_g: signal.as_felt(window.limit),
             utilisation: window.utilisation,
         }

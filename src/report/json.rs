@@ -6,7 +6,9 @@ use super::number::{json as number, json_or_null};
 use super::{end_key, outcome_key};
 use crate::envelope::{Ignored, Spell};
 use crate::motion::Ledger;
-use crate::study::{Assessment, Case, Extremes, Finding, RuleResult, Run, SeatResult, Why};
+use crate::study::{
+    Assessment, Case, Change, Extremes, Finding, Remedy, RuleResult, Run, SeatResult, Why,
+};
 
 /// The whole assessment, indented, with a line end.
 pub fn check_json(assessment: &Assessment) -> String {
@@ -128,22 +130,39 @@ fn finding(finding: &Finding) -> Value {
         "utilisation": number(worst.utilisation),
         "band": number(finding.band),
         "why": why(&finding.why),
-        "remedies": [],
+        "remedies": finding.remedies.iter().map(remedy).collect::<Vec<_>>(),
     })
 }
 
 fn why(why: &Why) -> Value {
-    let parts = why.parts_g;
     json!({
         "speed_m_s": number(why.speed_m_s),
         "radius_m": json_or_null(why.radius_m),
-        "grade_deg": json_or_null(why.grade_rad.map(f64::to_degrees)),
+        "grade_deg": number(why.grade_rad.to_degrees()),
         "bank_left_deg": json_or_null(why.bank_left_rad.map(f64::to_degrees)),
         "parts_g": {
-            "gravity": json_or_null(parts.map(|p| p.gravity)),
-            "normal": json_or_null(parts.map(|p| p.normal)),
-            "tangential": json_or_null(parts.map(|p| p.tangential)),
-            "offset": json_or_null(parts.map(|p| p.offset)),
+            "gravity": number(why.parts_g.gravity),
+            "normal": number(why.parts_g.normal),
+            "tangential": number(why.parts_g.tangential),
+            "offset": number(why.parts_g.offset),
         },
+    })
+}
+
+fn remedy(remedy: &Remedy) -> Value {
+    let (change, unit) = match remedy.change {
+        Change::Speed => ("speed", "m/s"),
+        Change::Radius => ("radius", "m"),
+        Change::Bank => ("bank", "deg left"),
+    };
+    let in_unit = |value: f64| match remedy.change {
+        Change::Bank => value.to_degrees(),
+        Change::Speed | Change::Radius => value,
+    };
+    json!({
+        "change": change,
+        "from": number(in_unit(remedy.from)),
+        "to": number(in_unit(remedy.to)),
+        "unit": unit,
     })
 }

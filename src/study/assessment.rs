@@ -124,34 +124,58 @@ pub struct Finding {
     pub landmark: Option<String>,
     /// What makes the load what it is.
     pub why: Why,
+    /// First-order ways to bring the load to the limit.
+    pub remedies: Vec<Remedy>,
 }
 
-/// The state of things at a finding's worst instant.
+/// The state of things at a finding's worst instant; spine quantities at the seat's station.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Why {
     /// Speed of the leading axle, m/s.
     pub speed_m_s: f64,
-    /// Radius of the spine at the seat's station, m, where it is curved.
+    /// Radius of the spine, m, where it is curved.
     pub radius_m: Option<f64>,
-    /// Grade of the spine there, rad.
-    pub grade_rad: Option<f64>,
-    /// Bank to the left there, rad.
+    /// Grade, rad.
+    pub grade_rad: f64,
+    /// Bank to the left, rad, unless the track stands on end.
     pub bank_left_rad: Option<f64>,
-    /// The load in parts, where they are known.
-    pub parts_g: Option<WhyParts>,
+    /// The load in parts.
+    pub parts_g: Parts,
 }
 
 /// Parts of a filtered load along the rule's axis, g; they sum to it.
 #[derive(Clone, Copy, Debug, PartialEq)]
-pub struct WhyParts {
-    /// Gravity.
+pub struct Parts {
+    /// Gravity; 0 where the envelope leaves gravity out.
     pub gravity: f64,
-    /// v²/ρ.
+    /// v²/ρ of the spine at the seat's station.
     pub normal: f64,
-    /// Change of speed.
+    /// Change of speed along the spine.
     pub tangential: f64,
-    /// Offset from the spine.
+    /// The rest: what the offset from the spine adds.
     pub offset: f64,
+}
+
+/// One change that would, to first order and by itself, bring the load to the limit.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Remedy {
+    /// What is changed.
+    pub change: Change,
+    /// As it is: m/s, m or rad.
+    pub from: f64,
+    /// As it would be.
+    pub to: f64,
+}
+
+/// What a remedy changes.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Change {
+    /// Speed of the train, m/s.
+    Speed,
+    /// Radius of the spine, m.
+    Radius,
+    /// Bank to the left, rad.
+    Bank,
 }
 
 impl Extremes {

@@ -1,10 +1,11 @@
 //! One case: run the train, work out what each seat feels, hold it against the envelopes, keep the reduced result.
 
-use super::assessment::{Case, Extremes, Finding, RuleResult, Run, SeatResult, Why};
+use super::assessment::{Case, Extremes, Finding, RuleResult, Run, SeatResult};
 use super::plan::{CaseId, Design, Plan};
-use crate::envelope::{self, Judgement, Outcome, RunState};
-use crate::input::{GravityTerm, Seat};
-use crate::loads::{self, AxesG, CarLoads};
+use super::seat::SeatView;
+use crate::envelope::{self, RunState};
+use crate::input::GravityTerm;
+use crate::loads::{self, CarLoads};
 use crate::motion::{self, History, RunEnd, Samples};
 
 /// Largest closure error of a run's books that its loads may rest on, part of the energy turned over.
@@ -115,12 +116,12 @@ fn samples_are_missing(history: &History<'_>, samples: &Samples) -> Option<Strin
 }
 
 /// What all seats of a case are judged with.
-struct Judging<'a> {
-    plan: &'a Plan<'a>,
-    id: CaseId,
-    design: &'a Design<'a>,
-    samples: Samples,
-    state: RunState,
+pub(super) struct Judging<'a> {
+    pub(super) plan: &'a Plan<'a>,
+    pub(super) id: CaseId,
+    pub(super) design: &'a Design<'a>,
+    pub(super) samples: Samples,
+    pub(super) state: RunState,
 }
 
 impl<'a> Judging<'a> {
@@ -162,9 +163,9 @@ impl<'a> Judging<'a> {
                 felt_g: &felt.seats[index],
                 without_gravity_g: without_gravity.as_ref().map(|l| &l.seats[index]),
             };
-            let judgements = seat.judgements();
-            findings.extend(seat.findings(&judgements));
-            seats.push(seat.result(judgements));
+            let (result, more) = seat.judge();
+            seats.push(result);
+            findings.extend(more);
         }
     }
 
@@ -178,112 +179,4 @@ impl<'a> Judging<'a> {
             term,
         )
     }
-}
-
-/// One seat of one case.
-struct SeatView<'a> {
-    judging: &'a Judging<'a>,
-    car: usize,
-    seat: &'a Seat,
-    station_m: &'a [f64],
-    felt_g: &'a AxesG,
-    without_gravity_g: Option<&'a AxesG>,
-}
-
-impl SeatView<'_> {
-    /// In order of envelope and rule; each distinct filter runs once.
-    fn judgements(&self) -> Vec<Judgement> {
-        let envelopes = &self.judging.plan.study.envelopes;
-        let mut by_envelope = vec![Vec::new(); envelopes.len()];
-        for view in &self.judging.plan.views {
-            let axes_g = match (view.gravity, self.without_gravity_g) {
-                (GravityTerm::Excluded, Some(axes_g)) => axes_g,
-                _ => self.felt_g,
-            };
-            let record = loads::filtered(axes_g, self.judging.samples.rate_hz, view.filter);
-            for &index in &view.envelopes {
-                by_envelope[index] =
-                    envelope::judge(&envelopes[index], &record, &self.judging.state);
-            }
-        }
-        by_envelope.concat()
-    }
-
-    fn findings(&self, judgements: &[Judgement]) -> Vec<Finding> {
-        let each = |j: &Judgement| -> Vec<Finding> {
-            let finding = |breach| self.finding(j, breach);
-            j.findings.iter().map(finding).collect()
-        };
-        judgements.iter().flat_map(each).collect()
-    }
-
-    fn finding(&self, judgement: &Judgement, breach: &envelope::Breach) -> Finding {
-        let (variant, scenario) = self.judging.plan.names(self.judging.id);
-        let samples = &self.judging.samples;
-        let time_s = breach.worst.peak_time_s;
-        let station_m = self.station_at(time_s);
-        let spine = &self.judging.design.spine;
-        Finding {
-            variant: variant.to_owned(),
-            scenario: scenario.to_owned(),
-            car: self.car + 1,
-            seat: self.seat.name.clone(),
-            envelope: judgement.envelope.clone(),
-            rule: judgement.rule.clone(),
-            outcome: if breach.worst.utilisation - judgement.band > 1.0 {
-                Outcome::Outside
-            } else {
-                Outcome::TooCloseToCall
-            },
-            breach: *breach,
-            band: judgement.band,
-            station_m,
-            train_station_m: value_at(&samples.train_station_m, samples.rate_hz, time_s),
-            from_station_m: self.station_at(breach.from_s),
-            to_station_m: self.station_at(breach.to_s),
-            landmark: spine.landmark_at(station_m).map(|l| l.name.clone()),
-            why: Why {
-                speed_m_s: value_at(&samples.speed_m_s, samples.rate_hz, time_s),
-                radius_m: None,
-                grade_rad: None,
-                bank_left_rad: None,
-                parts_g: None,
-            },
-        }
-    }
-
-    fn result(&self, judgements: Vec<Judgement>) -> SeatResult {
-        let wrapped_m = |i: usize| self.judging.design.spine.wrapped_m(self.station_m[i]);
-        SeatResult {
-            car: self.car + 1,
-            seat: self.seat.name.clone(),
-            felt_g: (self.felt_g.each_ref()).map(|axis_g| Extremes::of(axis_g, wrapped_m)),
-            rules: judgements.into_iter().map(|j| self.placed(j)).collect(),
-        }
-    }
-
-    fn placed(&self, judgement: Judgement) -> RuleResult {
-        let governing = judgement.governing;
-        let ignored = judgement.ignored.iter();
-        RuleResult {
-            station_m: governing.map(|spell| self.station_at(spell.peak_time_s)),
-            ignored_station_m: ignored.map(|i| self.station_at(i.time_s)).collect(),
-            judgement,
-        }
-    }
-
-    /// The seat's own station at a time, m, wrapped on a closed track.
-    fn station_at(&self, time_s: f64) -> f64 {
-        let rate_hz = self.judging.samples.rate_hz;
-        let station_m = value_at(self.station_m, rate_hz, time_s);
-        self.judging.design.spine.wrapped_m(station_m)
-    }
-}
-
-/// A series read between its samples; its last value beyond its end.
-fn value_at(values: &[f64], rate_hz: f64, time_s: f64) -> f64 {
-    let position = (time_s * rate_hz).clamp(0.0, (values.len() - 1) as f64);
-    let before = position as usize;
-    let after = (before + 1).min(values.len() - 1);
-    values[before] + (values[after] - values[before]) * (position - before as f64)
 }

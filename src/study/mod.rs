@@ -10,10 +10,13 @@ mod cautions;
 mod meaning;
 mod plan;
 mod record;
+mod seat;
 mod selection;
+mod why;
 
 pub use assessment::{
-    Assessment, At, Case, Extremes, Finding, RuleResult, Run, SeatResult, Why, WhyParts,
+    Assessment, At, Case, Change, Extremes, Finding, Parts, Remedy, RuleResult, Run, SeatResult,
+    Why,
 };
 pub use plan::{CaseId, Plan};
 pub use record::{CaseRecord, SeatRecord};
