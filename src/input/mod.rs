@@ -4,12 +4,26 @@
 //! program runs (the public types here). Only this stage opens files. It knows
 //! nothing of geometry or physics.
 
+mod decode;
+mod dimension;
+mod document;
 mod envelope;
+mod field;
+mod files;
+mod lower;
 mod operation;
+mod point_file;
 mod points;
+mod quantity;
+mod read;
+mod schema;
+mod shape;
 mod study;
+mod study_file;
+mod text;
 mod track;
 mod train;
+mod written;
 
 pub use envelope::{
     Axis, Between, Demand, Document, Envelope, Filter, GravityTerm, Rule, RuleKind, Sign, Status,
@@ -19,6 +33,23 @@ pub use operation::{
     Air, Device, Goal, Operation, Release, Resistance, Riders, Scenario, SeatName, Wind, Zone,
 };
 pub use points::{Columns, Fit, PointTable};
+pub use read::{read_envelope, read_study, read_track};
+pub use schema::schema;
 pub use study::{InputFile, Study, Variant};
 pub use track::{Change, Ease, Element, ElementTrack, Extent, Landmark, Start, Track, TrackSource};
 pub use train::{Car, Inertia, Seat, Train};
+
+/// The kinds of YAML files.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum FileKind {
+    /// Variants, a train, an operation and envelopes.
+    Study,
+    /// Elements or points, and landmarks.
+    Track,
+    /// Cars and seats.
+    Train,
+    /// Release, zones, resistance, air and scenarios.
+    Operation,
+    /// Rules from one document.
+    Envelope,
+}

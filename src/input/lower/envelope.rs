@@ -1,0 +1,380 @@
+//! Lowers an envelope file: rules whose curves have been checked point by point.
+
+use crate::input::dimension::Time;
+use crate::input::field::{At, Field, Located, WordOr, optional};
+use crate::input::lower::{Lower, Names};
+use crate::input::quantity::Quantity;
+use crate::input::written::Curve;
+use crate::input::written::envelope::{
+    AxisWord, BetweenWord, ButterworthKeys, EnvelopeFile, FilterKeys, FilterWord, GravityWord,
+    KindWord, PassesWord, ReadingWord, RuleKeys, SignWord, SourceKeys, StatusWord,
+};
+use crate::input::{
+    Axis, Between, Demand, Document, Envelope, Filter, GravityTerm, Rule, RuleKind, Sign, Status,
+    Sustained,
+};
+
+/// An envelope from its file.
+pub(in crate::input) fn envelope(
+    file: Located<EnvelopeFile>,
+    lower: &mut Lower,
+) -> Option<Envelope> {
+    let (root, file) = (file.at, file.value);
+    lower.version(file.crestfall, &root);
+    let name = lower.require(file.envelope, &root, "envelope");
+    let status = lower.require(file.status, &root, "status");
+    let source = lower.require(file.source, &root, "source");
+    let source = source.and_then(|source| document(source, lower));
+    let gravity = lower
+        .require(file.gravity, &root, "gravity")
+        .map(|word| gravity(word.value));
+    let filter = lower.require(file.filter, &root, "filter");
+    let filter = filter.and_then(|written| lowered_filter(written, lower));
+    let rules = lower.require(file.rules, &root, "rules");
+    let rules = rules.and_then(|list| all_rules(list, gravity, lower));
+    let name = name?;
+    Some(Envelope {
+        place: lower.place(&name.at),
+        name: name.value.0,
+        status: match status?.value {
+            StatusWord::Illustrative => Status::Illustrative,
+            StatusWord::Transcribed => Status::Transcribed,
+            StatusWord::Project => Status::Project,
+        },
+        source: source?,
+        gravity: gravity?,
+        filter: filter?,
+        rules: rules?,
+    })
+}
+
+fn gravity(word: GravityWord) -> GravityTerm {
+    match word {
+        GravityWord::Included => GravityTerm::Included,
+        GravityWord::Excluded => GravityTerm::Excluded,
+    }
+}
+
+fn document(source: Located<SourceKeys>, lower: &mut Lower) -> Option<Document> {
+    let (at, keys) = (source.at, source.value);
+    let document = lower.require(keys.document, &at, "document");
+    let edition = lower.require(keys.edition, &at, "edition");
+    Some(Document {
+        document: document?.value.0,
+        edition: edition?.value.0,
+        note: optional(keys.note).map(|note| note.value.0),
+    })
+}
+
+fn lowered_filter(
+    written: Located<WordOr<FilterWord, FilterKeys>>,
+    lower: &mut Lower,
+) -> Option<Filter> {
+    let keys = match written.value {
+        WordOr::Word(FilterWord::None) => return Some(Filter::None),
+        WordOr::Keys(keys) => keys,
+    };
+    let later = [keys.bessel, keys.chebyshev, keys.moving_average];
+    let has_later = later.iter().any(Option::is_some);
+    for family in later {
+        lower.later(family);
+    }
+    match keys.butterworth {
+        Some(butterworth) => lowered_butterworth(butterworth.given()?, lower),
+        None if has_later => None,
+        None => {
+            lower.missing(&written.at, "butterworth");
+            None
+        }
+    }
+}
+
+fn lowered_butterworth(written: Located<ButterworthKeys>, lower: &mut Lower) -> Option<Filter> {
+    let (at, keys) = (written.at, written.value);
+    let poles = lower.require(keys.poles, &at, "poles");
+    let corner = lower.require(keys.corner, &at, "corner");
+    let passes = lower.require(keys.passes, &at, "passes");
+    if let Some(poles) = &poles
+        && !(1..=8).contains(&poles.value)
+    {
+        lower.error(
+            &poles.at,
+            format!("found {} poles, expected 1 to 8", poles.value),
+        );
+    }
+    let corner_hz = corner.map(|corner| lower.above_zero(&corner));
+    let passes = passes?;
+    if !matches!(passes.value, PassesWord::One) {
+        lower.later_word(&passes.at, "passes:");
+    }
+    Some(Filter::Butterworth {
+        poles: u32::try_from(poles?.value).ok()?,
+        corner_hz: corner_hz?,
+    })
+}
+
+fn all_rules(
+    list: Located<Vec<Field<RuleKeys>>>,
+    gravity: Option<GravityTerm>,
+    lower: &mut Lower,
+) -> Option<Vec<Rule>> {
+    let count = list.value.len();
+    let mut ids = Names::of("rule");
+    let mut rules = Vec::new();
+    for item in lower.items(list, "rule") {
+        rules.extend(rule(item, gravity, &mut ids, lower));
+    }
+    (rules.len() == count && count > 0).then_some(rules)
+}
+
+fn rule(
+    item: Located<RuleKeys>,
+    gravity: Option<GravityTerm>,
+    ids: &mut Names,
+    lower: &mut Lower,
+) -> Option<Rule> {
+    let (at, mut keys) = (item.at, item.value);
+    let id = lower.require(std::mem::replace(&mut keys.id, Field::Bad), &at, "id");
+    if let Some(id) = &id {
+        ids.add(id, lower);
+    }
+    for later in [
+        keys.place.take(),
+        keys.scale.take(),
+        keys.only_if.take(),
+        keys.outcome.take(),
+    ] {
+        lower.later(later);
+    }
+    let kind = lower.require(std::mem::replace(&mut keys.kind, Field::Bad), &at, "kind")?;
+    if kind.value != KindWord::Sustained {
+        lower.later_word(&kind.at, "a rule of kind");
+        return None;
+    }
+    let (clause, note) = (optional(keys.clause.take()), optional(keys.note.take()));
+    let kind = sustained(keys, &at, gravity, lower).map(RuleKind::Sustained);
+    Some(Rule {
+        id: id?.value.0,
+        clause: clause.map(|clause| clause.value.0),
+        note: note.map(|note| note.value.0),
+        kind: kind?,
+        place: lower.place(&at),
+    })
+}
+
+fn sustained(
+    keys: RuleKeys,
+    at: &At,
+    gravity: Option<GravityTerm>,
+    lower: &mut Lower,
+) -> Option<Sustained> {
+    if let Some(reading) = optional(keys.reading)
+        && !matches!(reading.value, ReadingWord::Spell)
+    {
+        lower.later_word(&reading.at, "reading");
+    }
+    let axis = lower.require(keys.axis.unwrap_or(Field::Missing), at, "axis");
+    let ignore_below = optional(keys.ignore_below);
+    let ignore_below_s = ignore_below.map_or(0.0, |time| lower.not_negative(&time));
+    let points = match (keys.limits, keys.floor) {
+        (Some(limits), None) => limits_of(limits, keys.sign, at, lower),
+        (None, Some(floor)) => {
+            check_floor_axis(axis.as_ref(), gravity, &floor, lower);
+            floor_of(floor, keys.sign, lower)
+        }
+        (Some(_), Some(floor)) => {
+            let floor_at = floor.given().map_or(at.clone(), |floor| floor.at);
+            lower.error(
+                &floor_at,
+                "found both `limits` and `floor`, expected one of them",
+            );
+            None
+        }
+        (None, None) => {
+            let hint = "a rule has `limits` with `sign`, or a `floor`";
+            lower.error_with_hint(at, "missing key `limits`", hint);
+            None
+        }
+    };
+    let (demand, curve) = points?;
+    let between = lowered_between(keys.between, &curve, at, lower)?;
+    Some(Sustained {
+        axis: match axis?.value {
+            AxisWord::X => Axis::X,
+            AxisWord::Y => Axis::Y,
+            AxisWord::Z => Axis::Z,
+        },
+        demand,
+        curve: curve
+            .iter()
+            .map(|point| (point.duration.value.si, point.level.value))
+            .collect(),
+        between,
+        ignore_below_s,
+    })
+}
+
+/// One point of a curve.
+#[derive(Debug)]
+struct Point {
+    duration: Located<Quantity<Time>>,
+    level: Located<f64>,
+}
+
+fn limits_of(
+    limits: Field<Curve>,
+    sign: Option<Field<SignWord>>,
+    at: &At,
+    lower: &mut Lower,
+) -> Option<(Demand, Vec<Point>)> {
+    let sign = lower.require(sign.unwrap_or(Field::Missing), at, "sign");
+    let curve = points(limits.given()?, lower)?;
+    for point in &curve {
+        if point.level.value <= 0.0 {
+            let message = format!(
+                "found a limit of `{}` g, expected one above 0 g",
+                point.level.value
+            );
+            lower.error_with_hint(
+                &point.level.at,
+                message,
+                "limits are magnitudes; `sign: negative` makes them count the other way",
+            );
+        }
+    }
+    check_order(
+        &curve,
+        "limit",
+        |before, after| after > before,
+        "rise",
+        lower,
+    );
+    let sign = match sign?.value {
+        SignWord::Positive => Sign::Positive,
+        SignWord::Negative => Sign::Negative,
+    };
+    Some((Demand::Limit(sign), curve))
+}
+
+fn floor_of(
+    floor: Field<Curve>,
+    sign: Option<Field<SignWord>>,
+    lower: &mut Lower,
+) -> Option<(Demand, Vec<Point>)> {
+    if let Some(sign) = optional(sign) {
+        lower.error(&sign.at, "a `sign` stands beside `floor`, expected none");
+    }
+    let curve = points(floor.given()?, lower)?;
+    for point in &curve {
+        if point.level.value >= 1.0 {
+            let message = format!(
+                "found a floor of `{}` g, expected one below 1 g",
+                point.level.value
+            );
+            lower.error(&point.level.at, message);
+        }
+    }
+    check_order(
+        &curve,
+        "floor",
+        |before, after| after < before,
+        "fall",
+        lower,
+    );
+    Some((Demand::Floor, curve))
+}
+
+fn check_floor_axis(
+    axis: Option<&Located<AxisWord>>,
+    gravity: Option<GravityTerm>,
+    floor: &Field<Curve>,
+    lower: &mut Lower,
+) {
+    if let Some(axis) = axis
+        && !matches!(axis.value, AxisWord::Z)
+    {
+        lower.error(
+            &axis.at,
+            "a `floor` stands beside this axis, expected `axis: z`",
+        );
+    }
+    if let (Some(GravityTerm::Excluded), Field::Given(floor)) = (gravity, floor) {
+        lower.error(
+            &floor.at,
+            "a `floor` stands under `gravity: excluded`, expected `gravity: included`",
+        );
+    }
+}
+
+fn points(curve: Located<Curve>, lower: &mut Lower) -> Option<Vec<Point>> {
+    let written = curve.value.0;
+    let count = written.len();
+    if count == 0 {
+        lower.error(
+            &curve.at,
+            "found a curve without points, expected at least one",
+        );
+        return None;
+    }
+    let mut points: Vec<Point> = Vec::new();
+    for (duration, level) in written {
+        if let (Some(duration), Some(level)) = (duration.given(), level.given()) {
+            lower.not_negative(&duration);
+            points.push(Point { duration, level });
+        }
+    }
+    (points.len() == count).then_some(points)
+}
+
+/// Durations never decrease, and levels go one way.
+fn check_order(
+    curve: &[Point],
+    what: &str,
+    is_wrong: fn(f64, f64) -> bool,
+    way: &str,
+    lower: &mut Lower,
+) {
+    for pair in curve.windows(2) {
+        let (before, after) = (&pair[0], &pair[1]);
+        if after.duration.value.si < before.duration.value.si {
+            let (first, second) = (
+                lower.text(&before.duration.at),
+                lower.text(&after.duration.at),
+            );
+            let message = format!("found `{second}` after `{first}`, expected durations that rise");
+            lower.error(&after.duration.at, message);
+        } else if is_wrong(before.level.value, after.level.value) {
+            let (first, second) = (before.level.value, after.level.value);
+            let message = format!(
+                "found a {what} of `{second}` g after `{first}` g, expected one that does not {way} with duration"
+            );
+            lower.error(&after.level.at, message);
+        }
+    }
+}
+
+fn lowered_between(
+    field: Option<Field<BetweenWord>>,
+    curve: &[Point],
+    at: &At,
+    lower: &mut Lower,
+) -> Option<Between> {
+    if field.is_none() && curve.len() == 1 {
+        // One point is the same curve whichever way it runs.
+        return Some(Between::Linear);
+    }
+    let word = lower.require(field.unwrap_or(Field::Missing), at, "between")?;
+    match word.value {
+        BetweenWord::Linear => Some(Between::Linear),
+        BetweenWord::Step => Some(Between::Step),
+        BetweenWord::LogTime => {
+            for point in curve.iter().filter(|point| point.duration.value.si == 0.0) {
+                lower.error(
+                    &point.duration.at,
+                    "found a duration of 0 s under `between: log-time`, expected one above 0 s",
+                );
+            }
+            Some(Between::LogTime)
+        }
+    }
+}

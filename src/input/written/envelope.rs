@@ -1,0 +1,228 @@
+//! What may be written in an envelope file.
+
+use schemars::JsonSchema;
+use serde::Deserialize;
+
+use crate::input::dimension::{Frequency, Time};
+use crate::input::field::{Field, Text, WordOr};
+use crate::input::quantity::Quantity;
+use crate::input::written::{Curve, Later};
+
+/// An acceptance envelope: rules from one document, transcribed by the user.
+#[derive(Debug, Deserialize, JsonSchema)]
+#[serde(deny_unknown_fields)]
+#[schemars(rename = "envelope")]
+pub(in crate::input) struct EnvelopeFile {
+    /// Version of the file format: 1.
+    pub(in crate::input) crestfall: Field<u64>,
+    /// Name of the envelope.
+    pub(in crate::input) envelope: Field<Text>,
+    /// What kind of numbers it holds.
+    pub(in crate::input) status: Field<StatusWord>,
+    /// The document it comes from.
+    pub(in crate::input) source: Field<SourceKeys>,
+    /// Whether its loads hold gravity.
+    pub(in crate::input) gravity: Field<GravityWord>,
+    /// What its loads are filtered with: `none`, or `{butterworth: {poles, corner, passes}}`.
+    pub(in crate::input) filter: Field<WordOr<FilterWord, FilterKeys>>,
+    /// Its rules.
+    pub(in crate::input) rules: Field<Vec<Field<RuleKeys>>>,
+}
+
+/// What kind of numbers an envelope holds.
+#[derive(Clone, Copy, Debug, Deserialize, JsonSchema)]
+#[serde(rename_all = "kebab-case")]
+#[schemars(rename = "status")]
+pub(in crate::input) enum StatusWord {
+    /// Invented, to show the tool.
+    Illustrative,
+    /// Copied from a published document.
+    Transcribed,
+    /// Set by the project.
+    Project,
+}
+
+/// The document an envelope comes from.
+#[derive(Debug, Deserialize, JsonSchema)]
+#[serde(deny_unknown_fields)]
+#[schemars(rename = "source")]
+pub(in crate::input) struct SourceKeys {
+    /// Its number or title.
+    pub(in crate::input) document: Field<Text>,
+    /// Its edition.
+    pub(in crate::input) edition: Field<Text>,
+    /// A remark.
+    pub(in crate::input) note: Option<Field<Text>>,
+}
+
+/// Whether loads hold gravity.
+#[derive(Clone, Copy, Debug, Deserialize, JsonSchema)]
+#[serde(rename_all = "kebab-case")]
+#[schemars(rename = "gravity")]
+pub(in crate::input) enum GravityWord {
+    /// As an accelerometer reads: 1 g headward at rest.
+    Included,
+    /// Acceleration alone: 0 at rest.
+    Excluded,
+}
+
+/// No filter.
+#[derive(Clone, Copy, Debug, Deserialize, JsonSchema)]
+#[serde(rename_all = "kebab-case")]
+#[schemars(rename = "no_filter")]
+pub(in crate::input) enum FilterWord {
+    /// Loads are judged as they are.
+    None,
+}
+
+/// A filter by family.
+#[derive(Debug, Deserialize, JsonSchema)]
+#[serde(deny_unknown_fields)]
+#[schemars(rename = "filter")]
+pub(in crate::input) struct FilterKeys {
+    /// Butterworth low-pass.
+    pub(in crate::input) butterworth: Option<Field<ButterworthKeys>>,
+    #[schemars(skip)]
+    pub(in crate::input) bessel: Option<Field<Later>>,
+    #[schemars(skip)]
+    pub(in crate::input) chebyshev: Option<Field<Later>>,
+    #[schemars(skip)]
+    pub(in crate::input) moving_average: Option<Field<Later>>,
+}
+
+/// A Butterworth low-pass.
+#[derive(Debug, Deserialize, JsonSchema)]
+#[serde(deny_unknown_fields)]
+#[schemars(rename = "butterworth")]
+pub(in crate::input) struct ButterworthKeys {
+    /// 1 to 8.
+    pub(in crate::input) poles: Field<u64>,
+    /// Corner frequency (half the power).
+    pub(in crate::input) corner: Field<Quantity<Frequency>>,
+    /// `one`: forward only.
+    pub(in crate::input) passes: Field<PassesWord>,
+}
+
+/// How often a filter runs.
+#[derive(Clone, Copy, Debug, Deserialize, JsonSchema)]
+#[serde(rename_all = "kebab-case")]
+#[schemars(rename = "passes")]
+pub(in crate::input) enum PassesWord {
+    /// Forward only.
+    One,
+    #[schemars(skip)]
+    Two,
+    #[schemars(skip)]
+    ZeroPhase,
+}
+
+/// One requirement.
+#[derive(Debug, Deserialize, JsonSchema)]
+#[serde(deny_unknown_fields)]
+#[schemars(rename = "rule")]
+pub(in crate::input) struct RuleKeys {
+    /// Its name, unique in the envelope.
+    pub(in crate::input) id: Field<Text>,
+    /// What it demands.
+    pub(in crate::input) kind: Field<KindWord>,
+    /// Clause of the document.
+    pub(in crate::input) clause: Option<Field<Text>>,
+    /// A remark.
+    pub(in crate::input) note: Option<Field<Text>>,
+    /// Axis of the rider: x forward, y left, z headward.
+    pub(in crate::input) axis: Option<Field<AxisWord>>,
+    /// Which way a load counts; needed with `limits`.
+    pub(in crate::input) sign: Option<Field<SignWord>>,
+    /// Limits in g, above 0, against duration; or give `floor`.
+    pub(in crate::input) limits: Option<Field<Curve>>,
+    /// Least loads in g, below 1, against duration; in place of `limits` and `sign`.
+    pub(in crate::input) floor: Option<Field<Curve>>,
+    /// How the curve runs between its points.
+    pub(in crate::input) between: Option<Field<BetweenWord>>,
+    /// Spells shorter than this are listed, not judged.
+    pub(in crate::input) ignore_below: Option<Field<Quantity<Time>>>,
+    /// How duration is read: `spell`, the default.
+    pub(in crate::input) reading: Option<Field<ReadingWord>>,
+    #[serde(rename = "where")]
+    #[schemars(skip)]
+    pub(in crate::input) place: Option<Field<Later>>,
+    #[schemars(skip)]
+    pub(in crate::input) scale: Option<Field<Later>>,
+    #[schemars(skip)]
+    pub(in crate::input) only_if: Option<Field<Later>>,
+    #[schemars(skip)]
+    pub(in crate::input) outcome: Option<Field<Later>>,
+}
+
+/// What a rule demands.
+#[derive(Clone, Copy, Debug, PartialEq, Deserialize, JsonSchema)]
+#[serde(rename_all = "kebab-case")]
+#[schemars(rename = "rule_kind")]
+pub(in crate::input) enum KindWord {
+    /// A limit on one axis against duration.
+    Sustained,
+    #[schemars(skip)]
+    Combined,
+    #[schemars(skip)]
+    Resultant,
+    #[schemars(skip)]
+    Onset,
+    #[schemars(skip)]
+    Reversal,
+    #[schemars(skip)]
+    After,
+    #[schemars(skip)]
+    Index,
+    #[schemars(skip)]
+    Speed,
+}
+
+/// Axes of the rider.
+#[derive(Clone, Copy, Debug, Deserialize, JsonSchema)]
+#[serde(rename_all = "kebab-case")]
+#[schemars(rename = "axis")]
+pub(in crate::input) enum AxisWord {
+    /// Forward (eyes back).
+    X,
+    /// Left.
+    Y,
+    /// Headward (eyes down).
+    Z,
+}
+
+/// Which way a load counts.
+#[derive(Clone, Copy, Debug, Deserialize, JsonSchema)]
+#[serde(rename_all = "kebab-case")]
+#[schemars(rename = "sign")]
+pub(in crate::input) enum SignWord {
+    /// The load.
+    Positive,
+    /// Its opposite.
+    Negative,
+}
+
+/// How a curve runs between its points.
+#[derive(Clone, Copy, Debug, Deserialize, JsonSchema)]
+#[serde(rename_all = "kebab-case")]
+#[schemars(rename = "between")]
+pub(in crate::input) enum BetweenWord {
+    /// Straight in duration.
+    Linear,
+    /// The value of the last point at or before the duration.
+    Step,
+    /// Straight in the logarithm of duration.
+    LogTime,
+}
+
+/// How duration is read.
+#[derive(Clone, Copy, Debug, Deserialize, JsonSchema)]
+#[serde(rename_all = "kebab-case")]
+#[schemars(rename = "reading")]
+pub(in crate::input) enum ReadingWord {
+    /// No unbroken spell above a level longer than the curve allows.
+    Spell,
+    #[schemars(skip)]
+    Event,
+    #[schemars(skip)]
+    WindowMean,
+}
