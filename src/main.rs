@@ -1,3 +1,7 @@
-//! The command `crestfall`.
+//! The command `crestfall`: parse the arguments, do what they ask, tell how it went.
 
-fn main() {}
+mod cli;
+
+fn main() -> std::process::ExitCode {
+    cli::run().into()
+}

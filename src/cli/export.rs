@@ -1,0 +1,137 @@
+//! `crestfall export`: the time histories of every case and seat, one CSV file each.
+
+use std::fs::{self, Permissions};
+use std::io::{self, BufWriter, Write};
+use std::path::{Path, PathBuf};
+
+use clap::Args;
+use crestfall::diagnostic::Diagnostic;
+use crestfall::report;
+use crestfall::study::{CaseId, Plan, SeatRecord};
+use percent_encoding::{AsciiSet, NON_ALPHANUMERIC, utf8_percent_encode};
+
+use super::progress::ProgressLine;
+use super::{Failure, Status, StudyArguments, output};
+
+/// What a name keeps as it is, besides letters and digits.
+const KEPT: &AsciiSet = &NON_ALPHANUMERIC
+    .remove(b'.')
+    .remove(b'_')
+    .remove(b'+')
+    .remove(b'-');
+
+#[derive(Args)]
+pub(super) struct Arguments {
+    #[command(flatten)]
+    study: StudyArguments,
+    /// The folder to write into; made where it does not exist
+    #[arg(short, long = "output", value_name = "DIR")]
+    output: PathBuf,
+}
+
+pub(super) fn run(arguments: &Arguments) -> Result<Status, Failure> {
+    let study = arguments.study.read()?;
+    let plan = Plan::new(&study, &arguments.study.selection()).map_err(Failure::Input)?;
+    let cases = plan.cases();
+    let line = ProgressLine::new();
+    let (mut files, mut unmade) = (0, Vec::new());
+    for (done, &case) in cases.iter().enumerate() {
+        line.show(done, cases.len());
+        match export_case(&plan, case, &arguments.output)? {
+            Ok(written) => files += written,
+            Err(why) => unmade.push(why),
+        }
+    }
+    line.clear();
+    output::mistakes(&unmade);
+    output::print(&format!(
+        "{files} time histories written to {}\n",
+        arguments.output.display()
+    ))?;
+    Ok(if unmade.is_empty() {
+        Status::Inside
+    } else {
+        Status::NotInside
+    })
+}
+
+/// Writes the files of one case: how many, or why the run could not be made.
+fn export_case(
+    plan: &Plan<'_>,
+    case: CaseId,
+    folder: &Path,
+) -> Result<Result<usize, Diagnostic>, Failure> {
+    let (variant, scenario) = plan.names(case);
+    let record = match plan.record(case) {
+        Ok(record) => record,
+        Err(error) => {
+            let message = format!("the run of {variant} / {scenario} could not be made: {error}");
+            return Ok(Err(Diagnostic::error(message)));
+        }
+    };
+    let folder = folder.join(encoded(variant)).join(encoded(scenario));
+    fs::create_dir_all(&folder).map_err(|error| not_written(&folder, &error))?;
+    let mut files = 0;
+    record.each_seat(|seat| {
+        let path = folder.join(format!("car{}-{}.csv", seat.car, encoded(seat.seat)));
+        files += 1;
+        write_whole(&path, seat).map_err(|error| not_written(&path, &error))
+    })?;
+    Ok(Ok(files))
+}
+
+/// Writes under another name in the same folder, then renames: nobody ever sees half a file.
+fn write_whole(path: &Path, seat: &SeatRecord<'_>) -> io::Result<()> {
+    let folder = path.parent().unwrap_or(Path::new("."));
+    let mut builder = tempfile::Builder::new();
+    builder.prefix(".crestfall-");
+    if let Some(permissions) = permissions() {
+        builder.permissions(permissions);
+    }
+    let mut file = builder.tempfile_in(folder)?;
+    let mut out = BufWriter::new(file.as_file_mut());
+    report::write_record(seat, &mut out)?;
+    out.flush()?;
+    drop(out);
+    file.persist(path)?;
+    Ok(())
+}
+
+/// Those of a plain new file, which the user's mask narrows; a temporary file alone would be private.
+#[cfg(unix)]
+fn permissions() -> Option<Permissions> {
+    use std::os::unix::fs::PermissionsExt;
+    Some(Permissions::from_mode(0o666))
+}
+
+#[cfg(not(unix))]
+fn permissions() -> Option<Permissions> {
+    None
+}
+
+fn not_written(path: &Path, error: &io::Error) -> Failure {
+    Failure::Output(format!("{} could not be written: {error}", path.display()))
+}
+
+/// A name as a file or folder name: no separator, nothing that a folder means by itself.
+fn encoded(name: &str) -> String {
+    match name {
+        "." => "%2E".to_owned(),
+        ".." => "%2E%2E".to_owned(),
+        _ => utf8_percent_encode(name, KEPT).to_string(),
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::encoded;
+
+    #[test]
+    fn names_cannot_leave_their_folder() {
+        assert_eq!(encoded("warm-full+A_1.2"), "warm-full+A_1.2");
+        assert_eq!(encoded("../x y"), "..%2Fx%20y");
+        assert_eq!(encoded(".."), "%2E%2E");
+        assert_eq!(encoded("."), "%2E");
+        assert_eq!(encoded("50 %ü"), "50%20%25%C3%BC");
+    }
+}

@@ -1,0 +1,210 @@
+//! Limits against the duration of an unbroken spell.
+//!
+//! With S(T) the largest level at or above which the piecewise-linear load stays for T, the utilisation is
+//! the largest S(T)/limit(T) over all T that are judged. Limits never rise with T, so that the
+//! largest value lies at a window at a sample's own level, or at a length where the curve bends or judging
+//! begins, or (`log-time`) at a stationary point between those: see [`LimitCurve::worst_between`].
+
+use super::curve::{Falling, LimitCurve};
+use super::findings::{Candidate, Union, Unions};
+use super::judgement::{Breach, Ignored, Spell, Verdict};
+use super::signal::Signal;
+use super::spells::{Window, each_window};
+use crate::input::Sustained;
+use crate::loads::Filtered;
+
+/// Room left for rounding where samples are passed over because they cannot matter.
+const SPARE: f64 = 1e-9;
+
+/// Holds a finite record against a rule; the reason where it cannot be.
+pub(super) fn assess(rule: &Sustained, record: &Filtered) -> Result<Verdict, String> {
+    let signal = Signal::new(&record.axes_g[rule.axis as usize], rule.demand);
+    let curve = LimitCurve::new(rule);
+    check_length(&signal, &curve, record.rate_hz)?;
+    let mut tally = Tally::new(&curve, record.rate_hz);
+    let least_level = curve.least() * assured(&signal, &curve, record.rate_hz).clamp(0.0, 1.0);
+    each_window(&signal, least_level * (1.0 - SPARE), |w| tally.visit(&w));
+    let clock = Clock {
+        rate_hz: record.rate_hz,
+        delay_s: record.delay_s,
+    };
+    Ok(tally.verdict(&signal, clock))
+}
+
+fn check_length(signal: &Signal<'_>, curve: &LimitCurve, rate_hz: f64) -> Result<(), String> {
+    let Some(intervals) = signal.len().checked_sub(1) else {
+        return Err("the record holds no sample".to_owned());
+    };
+    let length_s = intervals as f64 / rate_hz;
+    if curve.judges(length_s) {
+        return Ok(());
+    }
+    Err(format!(
+        "the record of {length_s:.3} s is shorter than ignore_below, {} s",
+        curve.ignore_below_s()
+    ))
+}
+
+/// A utilisation that is reached for sure, found cheaply: the best of windows laid end to end.
+///
+/// What cannot exceed it (nor 1) needs no closer look.
+fn assured(signal: &Signal<'_>, curve: &LimitCurve, rate_hz: f64) -> f64 {
+    let intervals = (curve.ignore_below_s() * rate_hz).ceil() as usize;
+    let level = (0..signal.len().saturating_sub(intervals))
+        .step_by(intervals + 1)
+        .map(|first| signal.least(first, first + intervals))
+        .fold(f64::NEG_INFINITY, f64::max);
+    level / curve.limit(intervals as f64 / rate_hz)
+}
+
+/// What has been seen so far.
+struct Tally<'a> {
+    curve: &'a LimitCurve,
+    rate_hz: f64,
+    marked_s: Vec<f64>,
+    per_least_limit: f64,
+    governing: Option<Candidate>,
+    breaches: Unions,
+    ignored: Unions,
+}
+
+impl<'a> Tally<'a> {
+    fn new(curve: &'a LimitCurve, rate_hz: f64) -> Self {
+        Self {
+            curve,
+            rate_hz,
+            marked_s: curve.marked_durations_s(),
+            per_least_limit: (1.0 + SPARE) / curve.least(),
+            governing: None,
+            breaches: Unions::default(),
+            ignored: Unions::default(),
+        }
+    }
+
+    /// Weighs a window and those it grows into before it meets the next lower level, shortest first.
+    fn visit(&mut self, window: &Window) {
+        if window.level * self.per_least_limit < self.bar() {
+            return;
+        }
+        let own_s = window.length() / self.rate_hz;
+        self.weigh(window, 0.0, own_s);
+        let growth_s = (window.growth.0 + window.growth.1) / self.rate_hz;
+        if growth_s <= 0.0 {
+            return;
+        }
+        let load = Falling {
+            duration_s: own_s,
+            level: window.level,
+            fall_per_s: 1.0 / growth_s,
+        };
+        let longest_s = own_s + (window.level - window.lower) * growth_s;
+        self.visit_lowered(window, load, longest_s);
+    }
+
+    fn visit_lowered(&mut self, window: &Window, load: Falling, longest_s: f64) {
+        let mut from_s = load.duration_s;
+        for marked in self.marked_s.partition_point(|&t| t <= from_s)..=self.marked_s.len() {
+            let marked_s = self.marked_s.get(marked).copied().unwrap_or(f64::INFINITY);
+            let to_s = marked_s.min(longest_s);
+            if let Some(worst_s) = self.curve.worst_between(load, from_s, to_s) {
+                self.weigh(window, load.level - load.level_at(worst_s), worst_s);
+            }
+            if marked_s >= longest_s {
+                return;
+            }
+            self.weigh(window, load.level - load.level_at(marked_s), marked_s);
+            from_s = marked_s;
+        }
+    }
+
+    /// Weighs a window lowered by `drop`, which makes it last `duration_s`.
+    fn weigh(&mut self, window: &Window, drop: f64, duration_s: f64) {
+        let level = window.level - drop;
+        let limit = self.curve.limit(duration_s);
+        let candidate = Candidate {
+            samples: window.samples,
+            ends: window.ends_lowered(drop),
+            duration_s,
+            level,
+            limit,
+            utilisation: level / limit,
+        };
+        let beyond = candidate.utilisation > 1.0;
+        if !self.curve.judges(duration_s) {
+            if beyond {
+                self.ignored.add(candidate);
+            }
+            return;
+        }
+        if beyond {
+            self.ignored.drop_held_by(&candidate);
+            self.breaches.add(candidate);
+        }
+        if candidate.utilisation > 0.0
+            && self
+                .governing
+                .is_none_or(|best| candidate.governs_over(&best))
+        {
+            self.governing = Some(candidate);
+        }
+    }
+
+    /// Below this utilisation nothing changes what is reported.
+    fn bar(&self) -> f64 {
+        self.governing.map_or(0.0, |best| best.utilisation.min(1.0))
+    }
+
+    fn verdict(&self, signal: &Signal<'_>, clock: Clock) -> Verdict {
+        Verdict {
+            governing: self.governing.map(|best| clock.spell(signal, &best)),
+            findings: (self.breaches.iter().map(|u| clock.breach(signal, u))).collect(),
+            ignored: (self.ignored.iter().map(|u| clock.ignored(signal, u))).collect(),
+        }
+    }
+}
+
+/// Turns positions in the filtered record into times of the ride.
+#[derive(Clone, Copy)]
+struct Clock {
+    rate_hz: f64,
+    delay_s: f64,
+}
+
+impl Clock {
+    fn time_s(&self, position: f64) -> f64 {
+        (position / self.rate_hz - self.delay_s).max(0.0)
+    }
+
+    fn spell(&self, signal: &Signal<'_>, window: &Candidate) -> Spell {
+        let peak = signal.peak(window.samples.0, window.samples.1);
+        Spell {
+            from_s: self.time_s(window.ends.0),
+            to_s: self.time_s(window.ends.1),
+            duration_s: window.duration_s,
+            load_g: signal.as_felt(window.level),
+            peak_g: signal.as_felt(signal.at(peak)),
+            peak_time_s: self.time_s(peak as f64),
+            peak_sample: peak,
+            limit_g: signal.as_felt(window.limit),
+            utilisation: window.utilisation,
+        }
+    }
+
+    fn breach(&self, signal: &Signal<'_>, union: &Union) -> Breach {
+        Breach {
+            from_s: self.time_s(union.outer.ends.0),
+            to_s: self.time_s(union.outer.ends.1),
+            worst: self.spell(signal, &union.worst),
+        }
+    }
+
+    fn ignored(&self, signal: &Signal<'_>, union: &Union) -> Ignored {
+        let peak = signal.peak(union.outer.samples.0, union.outer.samples.1);
+        Ignored {
+            peak_g: signal.as_felt(signal.at(peak)),
+            duration_s: union.outer.duration_s,
+            time_s: self.time_s(peak as f64),
+            utilisation: union.worst.utilisation,
+        }
+    }
+}

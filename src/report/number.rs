@@ -1,0 +1,110 @@
+//! The only place where numbers are rounded and converted: nine significant digits for machines, a few for people.
+
+use serde_json::{Number, Value};
+
+/// Units that people read; files and machines keep to SI.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub enum Units {
+    /// Metres and metres a second.
+    #[default]
+    Si,
+    /// Feet and miles an hour.
+    Us,
+}
+
+/// Metres in a foot (international foot, 1959).
+const FOOT_M: f64 = 0.3048;
+/// Metres a second in a mile an hour (5280 ft in 3600 s).
+const MILE_PER_HOUR_M_S: f64 = 5280.0 * FOOT_M / 3600.0;
+
+/// A number with nine significant digits; one that does not exist is null.
+pub(super) fn json(value: f64) -> Value {
+    rounded(value)
+        .and_then(Number::from_f64)
+        .map_or(Value::Null, Value::Number)
+}
+
+/// The same for a number that may be missing.
+pub(super) fn json_or_null(value: Option<f64>) -> Value {
+    value.map_or(Value::Null, json)
+}
+
+/// The same as plain text; empty where the number does not exist.
+pub(super) fn plain(value: f64) -> String {
+    rounded(value).map_or_else(String::new, |v| v.to_string())
+}
+
+/// Nine significant digits, without a negative zero; `None` for what is no number.
+fn rounded(value: f64) -> Option<f64> {
+    if !value.is_finite() {
+        return None;
+    }
+    let rounded: f64 = format!("{value:.8e}").parse().ok()?;
+    Some(if rounded == 0.0 { 0.0 } else { rounded })
+}
+
+/// A load with its sign.
+pub(super) fn load(value_g: f64) -> String {
+    format!("{value_g:+.2} g")
+}
+
+/// A utilisation, with as many digits as it takes to show on which side of 1 it lies.
+pub(super) fn utilisation(value: f64) -> String {
+    (3..=12)
+        .map(|digits| format!("{value:.digits$}"))
+        .find(|text| value == 1.0 || text.parse::<f64>().is_ok_and(|shown| shown != 1.0))
+        .unwrap_or_else(|| value.to_string())
+}
+
+/// A length of time.
+pub(super) fn seconds(value_s: f64) -> String {
+    format!("{value_s:.2} s")
+}
+
+impl Units {
+    /// A station or a length.
+    pub(super) fn station(self, value_m: f64) -> String {
+        match self {
+            Self::Si => format!("{value_m:.1} m"),
+            Self::Us => format!("{:.1} ft", value_m / FOOT_M),
+        }
+    }
+
+    /// A speed.
+    pub(super) fn speed(self, value_m_s: f64) -> String {
+        match self {
+            Self::Si => format!("{value_m_s:.1} m/s"),
+            Self::Us => format!("{:.1} mph", value_m_s / MILE_PER_HOUR_M_S),
+        }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn machines_get_nine_digits_or_null() {
+        assert_eq!(json(1.0 / 3.0).to_string(), "0.333333333");
+        assert_eq!(json(-123_456_789.123).to_string(), "-123456789.0");
+        assert_eq!(json(-0.0).to_string(), "0.0");
+        assert_eq!(json(f64::NAN), Value::Null);
+        assert_eq!(json(f64::INFINITY), Value::Null);
+    }
+
+    #[test]
+    fn a_utilisation_beyond_one_never_reads_as_one() {
+        assert_eq!(utilisation(1.000_04), "1.00004");
+        assert_eq!(utilisation(0.999_96), "0.99996");
+        assert_eq!(utilisation(1.0), "1.000");
+        assert_eq!(utilisation(1.234_56), "1.235");
+        assert_ne!(utilisation(1.0 + f64::EPSILON), "1.000");
+    }
+
+    /// 26.8224 m/s are 60 mph and 30.48 m are 100 ft by the definition of the foot.
+    #[test]
+    fn people_may_read_feet_and_miles() {
+        assert_eq!(Units::Us.station(30.48), "100.0 ft");
+        assert_eq!(Units::Us.speed(26.8224), "60.0 mph");
+    }
+}

@@ -1,0 +1,188 @@
+//! What is wrong only when the files are put together: zones and goals against tracks, riders against trains.
+
+use std::collections::BTreeSet;
+
+use super::plan::{Design, Plan, seat_names};
+use super::selection::suggest;
+use crate::diagnostic::Diagnostic;
+use crate::input::{Envelope, Filter, Goal, Riders, Scenario, Zone};
+
+/// All mistakes of a plan.
+pub(super) fn check(plan: &Plan<'_>) -> Vec<Diagnostic> {
+    let goal = &plan.study.operation.goal;
+    let rate_hz = plan.study.rate_hz;
+    let mut mistakes: Vec<Diagnostic> = plan
+        .study
+        .envelopes
+        .iter()
+        .filter_map(|e| check_filter(e, rate_hz))
+        .collect();
+    for &scenario in &plan.scenarios {
+        mistakes.extend(check_finish(goal, scenario));
+    }
+    for design in &plan.variants {
+        mistakes.extend(check_goal(goal, design));
+        for &scenario in &plan.scenarios {
+            let zones = scenario.zones.iter();
+            mistakes.extend(zones.filter_map(|zone| check_zone(zone, design)));
+            mistakes.extend(check_release(goal, scenario, design));
+            mistakes.extend(check_riders(scenario, design));
+        }
+    }
+    mistakes
+}
+
+/// The same mistakes, each once: scenarios share zones and releases.
+pub(super) fn without_repeats(mistakes: Vec<Diagnostic>) -> Vec<Diagnostic> {
+    let mut seen = BTreeSet::new();
+    let mut first_time = |d: &Diagnostic| {
+        let place = d.place.as_ref();
+        let place = place.map(|p| (p.source.name.clone(), p.span.start));
+        seen.insert((place, d.message.clone()))
+    };
+    mistakes.into_iter().filter(|d| first_time(d)).collect()
+}
+
+fn check_filter(envelope: &Envelope, rate_hz: f64) -> Option<Diagnostic> {
+    match envelope.filter {
+        Filter::Butterworth { corner_hz, .. } if corner_hz >= 0.5 * rate_hz => Some(
+            Diagnostic::error(format!(
+                "filter corner {corner_hz} Hz is not below {} Hz, half of the study's rate",
+                0.5 * rate_hz
+            ))
+            .at(&envelope.place)
+            .hint(format!(
+                "set `rate` in the study well above {} Hz",
+                2.0 * corner_hz
+            )),
+        ),
+        _ => None,
+    }
+}
+
+fn check_finish(goal: &Goal, scenario: &Scenario) -> Option<Diagnostic> {
+    let Goal::Finish { zone, place } = goal else {
+        return None;
+    };
+    let names: Vec<String> = scenario.zones.iter().map(|z| z.name.clone()).collect();
+    if names.contains(zone) {
+        return None;
+    }
+    let message = format!(
+        "scenario `{}` has no zone `{zone}`, in which the run is to finish",
+        scenario.name
+    );
+    Some(
+        suggest(message, zone, &names)
+            .at(&scenario.place)
+            .also(place, "the finish"),
+    )
+}
+
+fn check_goal(goal: &Goal, design: &Design<'_>) -> Option<Diagnostic> {
+    let length_m = design.spine.length_m();
+    match goal {
+        Goal::TrackEnd if design.spine.is_closed() => Some(
+            Diagnostic::error(format!(
+                "a run on the closed track of variant `{}` has no end",
+                design.variant.name
+            ))
+            .at(&design.variant.place)
+            .hint("give `until` or `finish` in the operation"),
+        ),
+        Goal::Until { station_m, place } if !design.spine.is_closed() && *station_m > length_m => {
+            Some(
+                Diagnostic::error(format!(
+                    "`until` {station_m} m lies beyond the end of the track of variant `{}`, {length_m:.3} m",
+                    design.variant.name
+                ))
+                .at(place)
+                .hint("leave `until` out to run to the end of the track"),
+            )
+        }
+        _ => None,
+    }
+}
+
+fn check_zone(zone: &Zone, design: &Design<'_>) -> Option<Diagnostic> {
+    let (name, variant) = (&zone.name, &design.variant.name);
+    let length_m = design.spine.length_m();
+    let on_track = |station_m: f64| (0.0..=length_m).contains(&station_m);
+    let error = |message: String| Some(Diagnostic::error(message).at(&zone.place));
+    if let Some(off_m) = [zone.from_m, zone.to_m].into_iter().find(|&m| !on_track(m)) {
+        return error(format!(
+            "zone `{name}` reaches to {off_m} m, the track of variant `{variant}` from 0 m to {length_m:.3} m"
+        ));
+    }
+    if zone.from_m <= zone.to_m {
+        return check_overlap(zone, zone.to_m - zone.from_m, design);
+    }
+    if design.spine.is_closed() {
+        return check_overlap(zone, zone.to_m - zone.from_m + length_m, design);
+    }
+    error(format!(
+        "zone `{name}` runs backwards, from {} m to {} m, and the track of variant `{variant}` is open",
+        zone.from_m, zone.to_m
+    ))
+    .map(|d| d.hint("exchange `from` and `to`; only a zone of a closed track crosses its seam"))
+}
+
+/// On a closed track a train must not reach into a zone with both its ends.
+fn check_overlap(zone: &Zone, zone_m: f64, design: &Design<'_>) -> Option<Diagnostic> {
+    let train_m = design.poses.layout().length_m();
+    let length_m = design.spine.length_m();
+    if !design.spine.is_closed() || zone_m + train_m <= length_m {
+        return None;
+    }
+    Some(
+        Diagnostic::error(format!(
+            "zone `{}` overlaps itself: {zone_m:.3} m and {train_m:.3} m of train are more than the {length_m:.3} m of the closed track of variant `{}`",
+            zone.name, design.variant.name
+        ))
+        .at(&zone.place)
+        .hint("shorten the zone, or split it into two with names of their own"),
+    )
+}
+
+fn check_release(goal: &Goal, scenario: &Scenario, design: &Design<'_>) -> Option<Diagnostic> {
+    let release = &scenario.release;
+    let (first_m, last_m) = design.poses.stations_m();
+    let variant = &design.variant.name;
+    if !(first_m..=last_m).contains(&release.station_m) {
+        return Some(
+            Diagnostic::error(format!(
+                "with the leading axle released at {} m the train is not wholly on the track of variant `{variant}`: \
+                 expected {first_m:.3} m to {last_m:.3} m",
+                release.station_m
+            ))
+            .at(&release.place),
+        );
+    }
+    match goal {
+        Goal::Until { station_m, place } if *station_m <= release.station_m => Some(
+            Diagnostic::error(format!(
+                "`until` {station_m} m does not lie ahead of the release at {} m",
+                release.station_m
+            ))
+            .at(place)
+            .also(&release.place, "the release"),
+        ),
+        _ => None,
+    }
+}
+
+fn check_riders(scenario: &Scenario, design: &Design<'_>) -> Vec<Diagnostic> {
+    let Riders::Seats(named) = &scenario.riders else {
+        return Vec::new();
+    };
+    let known = seat_names(design.variant);
+    let named = named.iter().map(|s| (format!("{}-{}", s.car, s.seat), s));
+    named
+        .filter(|(name, _)| !known.contains(name))
+        .map(|(name, seat)| {
+            let train = &design.variant.train.name;
+            let message = format!("there is no seat `{name}` in the train `{train}`");
+            suggest(message, &name, &known).at(&seat.place)
+        })
+        .collect()
+}

@@ -1,0 +1,157 @@
+//! One seat of one case: its loads held against the envelopes, and what was found put in its place on the ride.
+
+use super::assessment::{Extremes, Finding, RuleResult, SeatResult};
+use super::case::Judging;
+use super::plan::View;
+use super::why::PartSeries;
+use crate::envelope::{self, Breach, Judgement, Outcome};
+use crate::input::{Axis, Envelope, GravityTerm, RuleKind, Seat};
+use crate::loads::{self, AxesG, Filtered};
+
+/// One seat of one case.
+pub(super) struct SeatView<'a> {
+    pub(super) judging: &'a Judging<'a>,
+    /// From 0 at the front.
+    pub(super) car: usize,
+    pub(super) seat: &'a Seat,
+    /// The seat's own station at each sample, m, not wrapped.
+    pub(super) station_m: &'a [f64],
+    pub(super) felt_g: &'a AxesG,
+    pub(super) without_gravity_g: Option<&'a AxesG>,
+}
+
+impl SeatView<'_> {
+    /// The seat's result and its findings, both in order of envelope and rule.
+    pub(super) fn judge(&self) -> (SeatResult, Vec<Finding>) {
+        let envelopes = &self.judging.plan.study.envelopes;
+        let mut by_envelope = vec![(Vec::new(), Vec::new()); envelopes.len()];
+        for view in &self.judging.plan.views {
+            let record = self.record(view);
+            let mut parts = PartsOfView::new(self, view, &record);
+            for &index in &view.envelopes {
+                let envelope = &envelopes[index];
+                let judgements = envelope::judge(envelope, &record, &self.judging.state);
+                let findings = self.findings(envelope, &judgements, &mut parts);
+                by_envelope[index] = (judgements, findings);
+            }
+        }
+        let (judgements, findings): (Vec<_>, Vec<_>) = by_envelope.into_iter().unzip();
+        (self.result(judgements.concat()), findings.concat())
+    }
+
+    fn record(&self, view: &View) -> Filtered {
+        let axes_g = match (view.gravity, self.without_gravity_g) {
+            (GravityTerm::Excluded, Some(axes_g)) => axes_g,
+            _ => self.felt_g,
+        };
+        loads::filtered(axes_g, self.judging.samples.rate_hz, view.filter)
+    }
+
+    fn findings(
+        &self,
+        envelope: &Envelope,
+        judgements: &[Judgement],
+        parts: &mut PartsOfView<'_>,
+    ) -> Vec<Finding> {
+        let mut findings = Vec::new();
+        for (rule, judgement) in envelope.rules.iter().zip(judgements) {
+            let RuleKind::Sustained(demand) = &rule.kind;
+            for breach in &judgement.findings {
+                let parts = parts.along(demand.axis);
+                findings.push(self.finding(judgement, breach, parts));
+            }
+        }
+        findings
+    }
+
+    fn finding(&self, judgement: &Judgement, breach: &Breach, parts: &PartSeries<'_>) -> Finding {
+        let (variant, scenario) = self.judging.plan.names(self.judging.id);
+        let samples = &self.judging.samples;
+        let time_s = breach.worst.peak_time_s;
+        let station_m = self.station_at(time_s);
+        let spine = &self.judging.design.spine;
+        let speed_m_s = value_at(&samples.speed_m_s, samples.rate_hz, time_s);
+        let why = parts.why(&breach.worst, speed_m_s, &spine.at(station_m));
+        Finding {
+            variant: variant.to_owned(),
+            scenario: scenario.to_owned(),
+            car: self.car + 1,
+            seat: self.seat.name.clone(),
+            envelope: judgement.envelope.clone(),
+            rule: judgement.rule.clone(),
+            outcome: if breach.worst.utilisation - judgement.band > 1.0 {
+                Outcome::Outside
+            } else {
+                Outcome::TooCloseToCall
+            },
+            breach: *breach,
+            band: judgement.band,
+            station_m,
+            train_station_m: value_at(&samples.train_station_m, samples.rate_hz, time_s),
+            from_station_m: self.station_at(breach.from_s),
+            to_station_m: self.station_at(breach.to_s),
+            landmark: spine.landmark_at(station_m).map(|l| l.name.clone()),
+            remedies: parts.remedies(&breach.worst, &why),
+            why,
+        }
+    }
+
+    fn result(&self, judgements: Vec<Judgement>) -> SeatResult {
+        let wrapped_m = |i: usize| self.judging.design.spine.wrapped_m(self.station_m[i]);
+        SeatResult {
+            car: self.car + 1,
+            seat: self.seat.name.clone(),
+            felt_g: (self.felt_g.each_ref()).map(|axis_g| Extremes::of(axis_g, wrapped_m)),
+            rules: judgements.into_iter().map(|j| self.placed(j)).collect(),
+        }
+    }
+
+    fn placed(&self, judgement: Judgement) -> RuleResult {
+        let governing = judgement.governing;
+        let ignored = judgement.ignored.iter();
+        RuleResult {
+            station_m: governing.map(|spell| self.station_at(spell.peak_time_s)),
+            ignored_station_m: ignored.map(|i| self.station_at(i.time_s)).collect(),
+            judgement,
+        }
+    }
+
+    /// The seat's own station at a time, m, wrapped on a closed track.
+    fn station_at(&self, time_s: f64) -> f64 {
+        let rate_hz = self.judging.samples.rate_hz;
+        let station_m = value_at(self.station_m, rate_hz, time_s);
+        self.judging.design.spine.wrapped_m(station_m)
+    }
+}
+
+/// The parts of a view's loads, worked out for an axis when its first finding asks for them.
+struct PartsOfView<'a> {
+    seat: &'a SeatView<'a>,
+    view: &'a View,
+    record: &'a Filtered,
+    axes: [Option<PartSeries<'a>>; 3],
+}
+
+impl<'a> PartsOfView<'a> {
+    fn new(seat: &'a SeatView<'a>, view: &'a View, record: &'a Filtered) -> Self {
+        Self {
+            seat,
+            view,
+            record,
+            axes: [None, None, None],
+        }
+    }
+
+    fn along(&mut self, axis: Axis) -> &PartSeries<'a> {
+        self.axes[axis as usize]
+            .get_or_insert_with(|| PartSeries::new(self.seat, self.view, self.record, axis))
+    }
+}
+
+/// A series, not empty, read between its samples; its last value beyond its end.
+fn value_at(values: &[f64], rate_hz: f64, time_s: f64) -> f64 {
+    let position = (time_s * rate_hz).clamp(0.0, (values.len() - 1) as f64);
+    let before = position as usize;
+    let after = (before + 1).min(values.len() - 1);
+    values[before] + (values[after] - values[before]) * (position - before as f64)
+}
