@@ -29,6 +29,75 @@ fn exact_level_run() {
     assert_eq!(report["findings"], Value::Array(Vec::new()));
 }
 
+/// A level circle of 20 m to the left at 10 m/s, one and a half times round: a car on two axles turns with
+/// ω = v/R about a centre √(R² − 0.8²) to the left of its middle, so that the left seat feels ω² (that − 0.45 m).
+#[test]
+fn exact_circle_across_the_seam() {
+    let study = Fixture::level();
+    let mut table = "x_m,y_m,z_m,bank_left_deg\n".to_owned();
+    for point in 0..250 {
+        let (sin, cos) = (std::f64::consts::TAU * f64::from(point) / 250.0).sin_cos();
+        table += &format!("{:.12},{:.12},5,0\n", 20.0 * cos, 20.0 * sin);
+    }
+    study.write("circle.csv", &table);
+    study.write(
+        "ride.track.yaml",
+        "crestfall: 1\ntrack: Circle\npoints: {file: circle.csv, fit: exact, closed: true}\n",
+    );
+    study.replace("ride.operation.yaml", "until: 60 m", "until: 190 m");
+    let ran = study.run(&["check", "ride.study.yaml", "--format", "json"]);
+    let report = ran.expect_status(0).json();
+    let case = &report["cases"][0];
+    assert_near(&case["end_station_m"], 190.0, 1e-6);
+    let left_g = 0.25 * ((400.0_f64 - 0.64).sqrt() - 0.45) / 9.806_65;
+    let seat = &case["seats"][0];
+    assert_near(&seat["felt_g"]["y"]["max"], left_g, 1e-5);
+    assert_near(&seat["felt_g"]["y"]["min"], left_g, 1e-5);
+    assert_near(&seat["felt_g"]["x"]["max"], -0.25 * 0.2 / 9.806_65, 1e-5);
+    let rules = seat["rules"].as_array().expect("a list");
+    let y_left = rules
+        .iter()
+        .find(|rule| rule["rule"] == "y-left")
+        .expect("the rule");
+    assert_near(&y_left["utilisation"], left_g, 1e-5);
+    let length_m = 40.0 * std::f64::consts::PI;
+    for station in ["max_station_m", "min_station_m"] {
+        let station_m = seat["felt_g"]["z"][station].as_f64().expect("a number");
+        assert!((0.0..length_m).contains(&station_m), "{station_m}");
+    }
+}
+
+/// A closed track has no end of its own, and a zone with the train must not be longer than it.
+#[test]
+fn a_closed_track_wants_an_end() {
+    let study = Fixture::level();
+    study.write(
+        "circle.csv",
+        &(0..60).fold("x_m,y_m,z_m,bank_left_deg\n".to_owned(), |table, point| {
+            let (sin, cos) = (std::f64::consts::TAU * f64::from(point) / 60.0).sin_cos();
+            table + &format!("{},{},5,0\n", 20.0 * cos, 20.0 * sin)
+        }),
+    );
+    study.write(
+        "ride.track.yaml",
+        "crestfall: 1\ntrack: Circle\npoints: {file: circle.csv, fit: exact, closed: true}\n",
+    );
+    let operation = "ride.operation.yaml";
+    study.replace(operation, "until: 60 m\n", "");
+    study.replace(
+        operation,
+        "scenarios:",
+        "zones:\n  - {name: long, kind: eddy, from: 5 m, to: 4 m, peak_force: 1 N, critical_speed: 9 m/s}\nscenarios:",
+    );
+    let ran = study.run(&["check", "ride.study.yaml"]);
+    ran.expect_status(2);
+    assert!(
+        ran.err.contains("has no end") && ran.err.contains("give `until` or `finish`"),
+        "{ran:?}"
+    );
+    assert!(ran.err.contains("zone `long` overlaps itself"), "{ran:?}");
+}
+
 #[test]
 fn inside_is_said_of_the_envelope_given_and_is_status_0() {
     let ran = Fixture::level().run(&["check", "ride.study.yaml"]);
