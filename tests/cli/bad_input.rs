@@ -9,6 +9,7 @@ use std::path::{Path, PathBuf};
 
 use crestfall::diagnostic::Diagnostic;
 use crestfall::input::read_study;
+use proptest::prelude::*;
 
 const STUDY: &str = "ride.study.yaml";
 
@@ -91,6 +92,7 @@ impl Case {
     fn line(&self, diagnostic: &Diagnostic, folder: &Path) -> String {
         let prefix = format!("{}/", folder.display());
         let message = diagnostic.message.replace(&prefix, "");
+        let message = message.replace(prefix.trim_end_matches('/'), ".");
         let drawn = diagnostic.render(false);
         assert!(drawn.contains(&diagnostic.message), "{drawn}");
         let Some(place) = &diagnostic.place else {
@@ -130,5 +132,43 @@ fn copy_good(to: &Path) {
     for file in listed(&root().join("good")) {
         let name = file.file_name().expect("a listed file has a name");
         fs::copy(&file, to.join(name)).expect("a good file is copied");
+    }
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig { cases: 200, failure_persistence: None, ..ProptestConfig::default() })]
+
+    /// However a good file is damaged, reading ends, and what it says can be drawn.
+    #[test]
+    fn damaged_files_are_read_or_refused(
+        file in 0..FOLDERS.len(),
+        damages in prop::collection::vec((any::<prop::sample::Index>(), 0..4_u8, "[\\PC\n\t]{0,3}"), 1..4),
+    ) {
+        let folder = tempfile::tempdir().expect("a temporary folder");
+        copy_good(folder.path());
+        let path = folder.path().join(FOLDERS[file].1);
+        let mut text: Vec<char> = fs::read_to_string(&path).expect("good files are text").chars().collect();
+        for (place, kind, other) in damages {
+            let at = place.index(text.len() + 1);
+            damage(&mut text, at, kind, &other);
+        }
+        fs::write(&path, text.iter().collect::<String>()).expect("the damaged file is written");
+        for diagnostic in read_study(&folder.path().join(STUDY)).err().unwrap_or_default() {
+            prop_assert!(diagnostic.render(true).contains("error"));
+        }
+    }
+}
+
+/// Cuts text off, takes some out, puts some in, or doubles what follows.
+fn damage(text: &mut Vec<char>, at: usize, kind: u8, other: &str) {
+    let end = (at + 12).min(text.len());
+    match kind {
+        0 => text.truncate(at),
+        1 => drop(text.drain(at..end)),
+        2 => drop(text.splice(at..at, other.chars())),
+        _ => {
+            let again: Vec<char> = text[at..end].to_vec();
+            drop(text.splice(at..at, again));
+        }
     }
 }
