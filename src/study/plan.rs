@@ -102,6 +102,7 @@ impl<'a> Plan<'a> {
     pub fn assess(&self, progress: Progress<'_>) -> Assessment {
         let ids = self.cases();
         let done = AtomicUsize::new(0);
+        progress(0, ids.len());
         let results: Vec<_> = ids
             .par_iter()
             .map(|&id| {
