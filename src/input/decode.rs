@@ -122,6 +122,16 @@ impl<'a> Decoder<'a> {
         }
     }
 
+    /// The mismatch of a scalar that is no number, or is one in quotes.
+    fn no_number<T>(&self, expected: &str) -> Result<T, Mismatch> {
+        match &self.node.kind {
+            Kind::Scalar(text, Meaning::Text) if text.parse::<f64>().is_ok() => Err(Mismatch(
+                format!("found `{text}` in quotes, expected {expected}\ntake the quotes off"),
+            )),
+            _ => self.mismatch(&expected),
+        }
+    }
+
     /// A finite number written in decimal, outside quotes.
     fn number(&self) -> Result<f64, Mismatch> {
         let (text, meaning) = self.scalar(&"a number")?;
@@ -136,7 +146,7 @@ impl<'a> Decoder<'a> {
             (Meaning::Text, Ok(value)) if !value.is_finite() => Err(Mismatch(format!(
                 "`{text}` is not a finite number, expected one"
             ))),
-            _ => self.mismatch(&"a number"),
+            _ => self.no_number("a number"),
         }
     }
 
@@ -194,7 +204,7 @@ impl<'de> Deserializer<'de> for Decoder<'_> {
         let (text, meaning) = self.scalar(&"a whole number")?;
         match (meaning, text.parse::<u64>()) {
             (Meaning::Number(_), Ok(value)) => visitor.visit_u64(value),
-            _ => self.mismatch(&"a whole number, 0 or above"),
+            _ => self.no_number("a whole number, 0 or above"),
         }
     }
 
@@ -286,7 +296,10 @@ impl<'de> Deserializer<'de> for Decoder<'_> {
         words: &'static [&'static str],
         visitor: V,
     ) -> Result<V::Value, Mismatch> {
-        let choice = format!("one of {}", listed(words.iter().copied()));
+        let choice = match words {
+            [word] => format!("`{word}`"),
+            _ => format!("one of {}", listed(words.iter().copied())),
+        };
         let (word, _) = self.scalar(&choice.as_str())?;
         match words.contains(&word) {
             true => visitor.visit_enum(Word(word)),

@@ -113,9 +113,18 @@ impl<'a> Builder<'a> {
     /// `serde_yaml`'s message where it sees the mistake as well.
     fn syntax_error(&self, error: &saphyr_parser::ScanError) -> Diagnostic {
         let at = self.byte(error.marker().index());
+        if error.info().contains("recursion limit") {
+            // `serde_yaml` would take seconds for a file full of brackets.
+            return self.too_deep(at..at);
+        }
         Shape::of(self.source)
             .err()
-            .unwrap_or_else(|| self.error(at..at, error.info()))
+            .unwrap_or_else(|| self.error(at..at, format!("not YAML: {}", error.info())))
+    }
+
+    fn too_deep(&self, span: Range<usize>) -> Diagnostic {
+        let message = format!("values nested deeper than {DEPTH}, expected at most {DEPTH} levels");
+        self.error(span, message)
     }
 
     fn node(
@@ -125,8 +134,7 @@ impl<'a> Builder<'a> {
         depth: usize,
     ) -> Result<Node, Diagnostic> {
         if depth > DEPTH {
-            let message = format!("nested more than {DEPTH} deep");
-            return Err(self.error(span, message));
+            return Err(self.too_deep(span));
         }
         match event {
             Event::Alias(_) => Err(self

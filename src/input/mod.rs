@@ -25,6 +25,11 @@ mod track;
 mod train;
 mod written;
 
+#[cfg(test)]
+mod quantity_tests;
+#[cfg(test)]
+mod tests;
+
 pub use envelope::{
     Axis, Between, Demand, Document, Envelope, Filter, GravityTerm, Rule, RuleKind, Sign, Status,
     Sustained,

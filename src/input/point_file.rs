@@ -16,6 +16,8 @@ use crate::input::{Columns, Fit, PointTable};
 
 /// Fewest points through which a quintic spline is laid.
 const FEWEST: usize = 6;
+/// Most points that are read: 50 km at 0.25 m.
+const MOST: usize = 200_000;
 /// Mistakes of one table that are shown.
 const SHOWN: usize = 20;
 /// Metres in a foot, exact: NIST SP 811 (2008), appendix B.8.
@@ -139,6 +141,11 @@ impl<'a> Table<'a> {
             return None;
         };
         let header = self.header(first)?;
+        if rest.len() > MOST {
+            let message = format!("found {} points, expected at most {MOST}", rest.len());
+            self.error(first.clone(), message);
+            return None;
+        }
         let (mut rows, mut values) = (Vec::new(), Vec::new());
         for line in rest {
             if let Some(row) = self.row(line, &header) {
@@ -189,6 +196,14 @@ impl<'a> Table<'a> {
 
     fn header(&mut self, line: &Range<usize>) -> Option<Header> {
         let cells = self.cells(line);
+        if let Some(instead) = no_header(&cells) {
+            let mistake = self.mistake(
+                line.clone(),
+                format!("found {instead}, expected a header that names the columns"),
+            );
+            self.push(mistake.hint("a header reads, for instance, `x_m,y_m,z_m,bank_left_deg`"));
+            return None;
+        }
         let layouts = [Layout::Bank, Layout::Up, Layout::Rails];
         let present: Vec<Layout> = layouts
             .into_iter()
@@ -213,18 +228,18 @@ impl<'a> Table<'a> {
         };
         let before = self.found.len();
         self.refuse_columns(&cells, layout);
-        let columns = layout
+        // All are looked for before the first missing one ends it.
+        let columns: Vec<_> = layout
             .names()
             .iter()
             .map(|name| self.column(name, &cells, line))
             .collect();
-        let columns: Option<Vec<_>> = columns;
         if self.found.len() > before {
             return None;
         }
         Some(Header {
             layout,
-            columns: columns?,
+            columns: columns.into_iter().collect::<Option<_>>()?,
             width: cells.len(),
         })
     }
@@ -318,9 +333,13 @@ impl<'a> Table<'a> {
                 None
             }
             Err(_) => {
+                let found = match cell.text {
+                    "" => "nothing".to_owned(),
+                    text => format!("`{text}`"),
+                };
                 self.error(
                     cell.span.clone(),
-                    format!("found `{}`, expected a number", cell.text),
+                    format!("found {found}, expected a number"),
                 );
                 None
             }
@@ -378,6 +397,14 @@ impl<'a> Table<'a> {
             false => self.left_out += 1,
         }
     }
+}
+
+/// What a first line is when it cannot be a header.
+fn no_header(cells: &[Cell<'_>]) -> Option<&'static str> {
+    if cells.iter().all(|cell| cell.text.parse::<f64>().is_ok()) {
+        return Some("numbers alone");
+    }
+    (cells.len() == 1).then_some("no comma")
 }
 
 /// The factor to m, rad or 1, if `written` is the column `name`.

@@ -9,6 +9,8 @@ use crate::input::read::Reader;
 use crate::input::written::study::{StudyFile, VariantKeys};
 use crate::input::{Envelope, FileKind, Filter, Riders, SeatName, Study, Train, Variant};
 
+/// Most variants that are read.
+const VARIANTS: usize = 100;
 /// Most samples a run may take.
 const SAMPLES: f64 = 1e7;
 
@@ -62,8 +64,10 @@ pub(super) fn study(named: &Named, reader: &mut Reader) -> Option<Study> {
         files: Vec::new(),
         place: plan.place,
     };
-    check_rate(&study, plan.rate_place.as_ref(), &mut reader.found);
-    check_seats(&study, &mut reader.found);
+    if reader.found.is_empty() {
+        check_rate(&study, plan.rate_place.as_ref(), &mut reader.found);
+        check_seats(&study, &mut reader.found);
+    }
     Some(study)
 }
 
@@ -79,18 +83,16 @@ fn plan(file: Located<StudyFile>, named: &Named, lower: &mut Lower) -> Option<Pl
     };
     let written = lower.require(file.variants, &root, "variants");
     let variants = written.map_or(Vec::new(), |written| {
-        if written.value.0.is_empty() {
-            lower.error(&written.at, "found no variant, expected at least one");
-        }
+        lower.count(&written.at, written.value.0.len(), VARIANTS, "variants");
         let entries = written.value.given();
         let plan_one = |(name, value)| planned(name, value, train.as_ref(), named, lower);
-        entries.into_iter().map(plan_one).collect()
+        entries.into_iter().take(VARIANTS).map(plan_one).collect()
     });
     let baseline = optional(file.baseline).map_or(0, |name| baseline(&name, &variants, lower));
     let operation = lower.require(file.operation, &root, "operation");
     let operation = operation.map(|path| reference(path, lower));
     let envelopes = lower.require(file.envelopes, &root, "envelopes");
-    let envelopes = envelopes.map_or(Vec::new(), |list| lower.items(list, "envelope"));
+    let envelopes = envelopes.map_or(Vec::new(), |list| lower.items(list, 100, "envelopes"));
     let envelopes = envelopes
         .into_iter()
         .map(|path| reference(path, lower))

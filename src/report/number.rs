@@ -70,6 +70,14 @@ impl Units {
         }
     }
 
+    /// A stretch of stations.
+    pub(super) fn stretch(self, from_m: f64, to_m: f64) -> String {
+        match self {
+            Self::Si => format!("{from_m:.1}..{to_m:.1} m"),
+            Self::Us => format!("{:.1}..{:.1} ft", from_m / FOOT_M, to_m / FOOT_M),
+        }
+    }
+
     /// A speed.
     pub(super) fn speed(self, value_m_s: f64) -> String {
         match self {

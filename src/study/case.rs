@@ -11,6 +11,9 @@ use crate::motion::{self, History, RunEnd, Samples};
 /// Largest closure error of a run's books that its loads may rest on, part of the energy turned over.
 const LARGEST_CLOSURE: f64 = 1e-6;
 
+/// Rounding of the energies themselves, part of the larger one: a run on the level turns over nothing.
+const ROUNDING: f64 = 1e-10;
+
 /// Runs and judges one case.
 pub(super) fn assess(plan: &Plan<'_>, id: CaseId) -> (Case, Vec<Finding>) {
     let (run, seats, findings) = match motion::simulate(&plan.ride(id)) {
@@ -94,7 +97,8 @@ fn not_completed(history: &History<'_>) -> Option<String> {
 /// Written so that books that hold no number do not close.
 fn books_do_not_close(history: &History<'_>) -> Option<String> {
     let energy = &history.energy;
-    if energy.closure_j.abs() <= LARGEST_CLOSURE * energy.turned_over_j {
+    let rounding_j = ROUNDING * energy.start_j.abs().max(energy.end_j.abs());
+    if energy.closure_j.abs() <= LARGEST_CLOSURE * energy.turned_over_j + rounding_j {
         return None;
     }
     Some(format!(

@@ -1,22 +1,18 @@
-//! What is wrong only when the files are put together: zones and goals against tracks, riders against trains.
+//! What is wrong only when the files are put together: zones, goals and releases against tracks.
+//!
+//! What the files show without a spine (riders against trains, filters against the rate) the reader has checked.
 
 use std::collections::BTreeSet;
 
-use super::plan::{Design, Plan, seat_names};
+use super::plan::{Design, Plan};
 use super::selection::suggest;
 use crate::diagnostic::Diagnostic;
-use crate::input::{Envelope, Filter, Goal, Riders, Scenario, Zone};
+use crate::input::{Goal, Scenario, Zone};
 
 /// All mistakes of a plan.
 pub(super) fn check(plan: &Plan<'_>) -> Vec<Diagnostic> {
     let goal = &plan.study.operation.goal;
-    let rate_hz = plan.study.rate_hz;
-    let mut mistakes: Vec<Diagnostic> = plan
-        .study
-        .envelopes
-        .iter()
-        .filter_map(|e| check_filter(e, rate_hz))
-        .collect();
+    let mut mistakes = Vec::new();
     for &scenario in &plan.scenarios {
         mistakes.extend(check_finish(goal, scenario));
     }
@@ -26,7 +22,6 @@ pub(super) fn check(plan: &Plan<'_>) -> Vec<Diagnostic> {
             let zones = scenario.zones.iter();
             mistakes.extend(zones.filter_map(|zone| check_zone(zone, design)));
             mistakes.extend(check_release(goal, scenario, design));
-            mistakes.extend(check_riders(scenario, design));
         }
     }
     mistakes
@@ -41,23 +36,6 @@ pub(super) fn without_repeats(mistakes: Vec<Diagnostic>) -> Vec<Diagnostic> {
         seen.insert((place, d.message.clone()))
     };
     mistakes.into_iter().filter(|d| first_time(d)).collect()
-}
-
-fn check_filter(envelope: &Envelope, rate_hz: f64) -> Option<Diagnostic> {
-    match envelope.filter {
-        Filter::Butterworth { corner_hz, .. } if corner_hz >= 0.5 * rate_hz => Some(
-            Diagnostic::error(format!(
-                "filter corner {corner_hz} Hz is not below {} Hz, half of the study's rate",
-                0.5 * rate_hz
-            ))
-            .at(&envelope.place)
-            .hint(format!(
-                "set `rate` in the study well above {} Hz",
-                2.0 * corner_hz
-            )),
-        ),
-        _ => None,
-    }
 }
 
 fn check_finish(goal: &Goal, scenario: &Scenario) -> Option<Diagnostic> {
@@ -169,20 +147,4 @@ fn check_release(goal: &Goal, scenario: &Scenario, design: &Design<'_>) -> Optio
         ),
         _ => None,
     }
-}
-
-fn check_riders(scenario: &Scenario, design: &Design<'_>) -> Vec<Diagnostic> {
-    let Riders::Seats(named) = &scenario.riders else {
-        return Vec::new();
-    };
-    let known = seat_names(design.variant);
-    let named = named.iter().map(|s| (format!("{}-{}", s.car, s.seat), s));
-    named
-        .filter(|(name, _)| !known.contains(name))
-        .map(|(name, seat)| {
-            let train = &design.variant.train.name;
-            let message = format!("there is no seat `{name}` in the train `{train}`");
-            suggest(message, &name, &known).at(&seat.place)
-        })
-        .collect()
 }

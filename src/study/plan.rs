@@ -102,6 +102,7 @@ impl<'a> Plan<'a> {
     pub fn assess(&self, progress: Progress<'_>) -> Assessment {
         let ids = self.cases();
         let done = AtomicUsize::new(0);
+        progress(0, ids.len());
         let results: Vec<_> = ids
             .par_iter()
             .map(|&id| {
@@ -170,7 +171,7 @@ fn seat_name(car: usize, seat: &Seat) -> String {
 }
 
 /// Names of all seats of a variant's train.
-pub(super) fn seat_names(variant: &Variant) -> Vec<String> {
+fn seat_names(variant: &Variant) -> Vec<String> {
     let cars = variant.train.cars.iter().enumerate();
     cars.flat_map(|(car, c)| c.seats.iter().map(move |s| seat_name(car, s)))
         .collect()

@@ -81,11 +81,10 @@ impl<'a> PartSeries<'a> {
         remedies.into_iter().flatten().collect()
     }
 
-    /// Turning the seat by δ to the left about the car's forward axis leaves f_l cos δ − f_u sin δ of a
-    /// load (f_l, f_u) on the left axis; the smaller δ that makes this the limit.
+    /// For a lateral load on a seat that looks along the track.
     fn bank_remedy(&self, spell: &Spell, why: &Why) -> Option<Remedy> {
-        let sideways = self.seat.faces_left_rad.sin().abs() < 1e-9;
-        if self.axis != Axis::Y || !sideways {
+        let sideways = self.seat.faces_left_rad.sin().abs() > 1e-9;
+        if self.axis != Axis::Y || sideways {
             return None;
         }
         let [x_g, y_g, z_g] = self.record.axes_g.each_ref().map(|a| a[spell.peak_sample]);
@@ -93,15 +92,19 @@ impl<'a> PartSeries<'a> {
         let up_g = sin_recline * x_g + cos_recline * z_g;
         // A rider who looks back has the car's left on the right.
         let facing = self.seat.faces_left_rad.cos().signum();
-        let (left_g, limit_g) = (facing * y_g, facing * spell.limit_g);
-        let half_rad = (limit_g / left_g.hypot(up_g)).acos();
-        let turns_rad = [half_rad, -half_rad].map(|half| wrapped_rad(half - up_g.atan2(left_g)));
-        let turn_rad = turns_rad
-            .into_iter()
-            .min_by(|a, b| a.abs().total_cmp(&b.abs()))?;
+        let turn_rad = bank_turn_rad(facing * y_g, up_g, facing * spell.limit_g);
         let bank_rad = why.bank_left_rad?;
         remedy(Change::Bank, bank_rad, wrapped_rad(bank_rad + turn_rad))
     }
+}
+
+/// The turn to the left about the forward axis that makes the left part of a load the limit.
+///
+/// A turn by δ leaves f_l cos δ − f_u sin δ = R cos(δ + φ) on the left axis and R sin(δ + φ) on the up axis, with
+/// R, φ the polar form of (f_l, f_u). Of the two solutions the one that presses the rider into the
+/// seat; no number where the whole load is below the limit.
+fn bank_turn_rad(left_g: f64, up_g: f64, limit_g: f64) -> f64 {
+    (limit_g / left_g.hypot(up_g)).acos() - up_g.atan2(left_g)
 }
 
 /// Normal and offset parts grow with v²: v √((limit − gravity − tangential)/(normal + offset)).
@@ -155,4 +158,28 @@ fn unfiltered_parts_g(
 /// An angle brought into (−π, π].
 fn wrapped_rad(angle_rad: f64) -> f64 {
     angle_rad.sin().atan2(angle_rad.cos())
+}
+
+#[cfg(test)]
+mod tests {
+    use super::bank_turn_rad;
+
+    /// Without any lateral load left, the bank is that of the coordinated turn, tan = v²/(r g): 45° at 1 g (common practice).
+    #[test]
+    fn exact_bank_of_a_coordinated_turn() {
+        let turn_rad = bank_turn_rad(1.0, 1.0, 0.0);
+        assert!((turn_rad.to_degrees() - 45.0).abs() < 1e-12, "{turn_rad}");
+    }
+
+    #[test]
+    fn the_turned_load_is_the_limit_and_presses_into_the_seat() {
+        for (left_g, up_g, limit_g) in [(4.2, -0.2, 2.0), (1.8, 1.0, 1.5), (-2.0, 1.2, -0.7)] {
+            let turn_rad: f64 = bank_turn_rad(left_g, up_g, limit_g);
+            let left_after_g = left_g * turn_rad.cos() - up_g * turn_rad.sin();
+            let up_after_g = up_g * turn_rad.cos() + left_g * turn_rad.sin();
+            assert!((left_after_g - limit_g).abs() < 1e-12, "{left_after_g}");
+            assert!(up_after_g > 0.0);
+        }
+        assert!(bank_turn_rad(0.1, 0.1, 1.0).is_nan());
+    }
 }

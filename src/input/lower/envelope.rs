@@ -105,7 +105,7 @@ fn lowered_butterworth(written: Located<ButterworthKeys>, lower: &mut Lower) -> 
     let corner_hz = corner.map(|corner| lower.above_zero(&corner));
     let passes = passes?;
     if !matches!(passes.value, PassesWord::One) {
-        lower.later_word(&passes.at, "passes:");
+        lower.later_word(&passes.at);
     }
     Some(Filter::Butterworth {
         poles: u32::try_from(poles?.value).ok()?,
@@ -121,7 +121,7 @@ fn all_rules(
     let count = list.value.len();
     let mut ids = Names::of("rule");
     let mut rules = Vec::new();
-    for item in lower.items(list, "rule") {
+    for item in lower.items(list, 1000, "rules") {
         rules.extend(rule(item, gravity, &mut ids, lower));
     }
     (rules.len() == count && count > 0).then_some(rules)
@@ -148,7 +148,7 @@ fn rule(
     }
     let kind = lower.require(std::mem::replace(&mut keys.kind, Field::Bad), &at, "kind")?;
     if kind.value != KindWord::Sustained {
-        lower.later_word(&kind.at, "a rule of kind");
+        lower.later_word(&kind.at);
         return None;
     }
     let (clause, note) = (optional(keys.clause.take()), optional(keys.note.take()));
@@ -171,7 +171,7 @@ fn sustained(
     if let Some(reading) = optional(keys.reading)
         && !matches!(reading.value, ReadingWord::Spell)
     {
-        lower.later_word(&reading.at, "reading");
+        lower.later_word(&reading.at);
     }
     let axis = lower.require(keys.axis.unwrap_or(Field::Missing), at, "axis");
     let ignore_below = optional(keys.ignore_below);

@@ -82,15 +82,25 @@ impl Lower {
         self.found.push(mistake.key(path));
     }
 
-    /// The items of a list that must have one.
-    pub(super) fn items<T>(&mut self, list: Located<Vec<Field<T>>>, what: &str) -> Vec<Located<T>> {
-        if list.value.is_empty() {
-            self.error(
-                &list.at,
-                format!("found an empty list, expected at least one {what}"),
-            );
+    /// The items of a list that has at least one, and at most `most`.
+    pub(super) fn items<T>(
+        &mut self,
+        list: Located<Vec<Field<T>>>,
+        most: usize,
+        what: &str,
+    ) -> Vec<Located<T>> {
+        self.count(&list.at, list.value.len(), most, what);
+        let items = list.value.into_iter().take(most);
+        items.filter_map(Field::given).collect()
+    }
+
+    /// Checks how many of something are given: at least one, at most `most`.
+    pub(super) fn count(&mut self, at: &At, count: usize, most: usize, what: &str) {
+        if count == 0 {
+            self.error(at, format!("found no {what}, expected at least one"));
+        } else if count > most {
+            self.error(at, format!("found {count} {what}, expected at most {most}"));
         }
-        list.value.into_iter().filter_map(Field::given).collect()
     }
 
     /// Records that a key's meaning is fixed but not built.
@@ -102,9 +112,10 @@ impl Lower {
     }
 
     /// Records that a word's meaning is fixed but not built.
-    pub(super) fn later_word(&mut self, at: &At, of: &str) {
+    pub(super) fn later_word(&mut self, at: &At) {
+        let key = at.key.rsplit('.').next().unwrap_or("").to_owned();
         let word = self.text(at).to_owned();
-        self.error(at, format!("{of} `{word}` is not built yet"));
+        self.error(at, format!("`{key}: {word}` is not built yet"));
     }
 
     /// The version of the file format.
@@ -130,7 +141,11 @@ impl Lower {
             let found = self.text(&quantity.at).to_owned();
             self.error(
                 &quantity.at,
-                format!("found `{found}`, expected {} above 0", D::ARTICLE_NAME),
+                format!(
+                    "found `{found}`, expected {} above 0 {}",
+                    D::ARTICLE_NAME,
+                    D::UNITS[0].name
+                ),
             );
         }
         quantity.value.si
@@ -143,8 +158,9 @@ impl Lower {
             self.error(
                 &quantity.at,
                 format!(
-                    "found `{found}`, expected {} of 0 or above",
-                    D::ARTICLE_NAME
+                    "found `{found}`, expected {} of 0 {} or above",
+                    D::ARTICLE_NAME,
+                    D::UNITS[0].name
                 ),
             );
         }
@@ -213,17 +229,19 @@ impl Names {
         self.add_text(&name.value.0, &name.at, lower);
     }
 
-    /// The same for a name made up of others.
-    pub(super) fn add_text(&mut self, name: &str, at: &At, lower: &mut Lower) {
+    /// The same for a name made up of others; whether it is new.
+    pub(super) fn add_text(&mut self, name: &str, at: &At, lower: &mut Lower) -> bool {
         match self.seen.get(name) {
             Some(first) => {
                 let message = format!("the {} `{name}` is given twice", self.what);
                 let first = lower.place(first);
                 let mistake = lower.mistake(at, message).also(&first, "first given here");
                 lower.found.push(mistake);
+                false
             }
             None => {
                 self.seen.insert(name.to_owned(), at.clone());
+                true
             }
         }
     }

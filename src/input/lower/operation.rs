@@ -76,6 +76,7 @@ fn goal(
             if zones_whole && !zones.iter().any(|kept| kept.is(&zone)) {
                 let names: Vec<&str> = zones.iter().map(|kept| kept.zone.name.as_str()).collect();
                 lower.unknown(&zone.at, "zone", &zone.value.0, &names);
+                return None;
             }
             Some(Goal::Finish {
                 place: lower.place(&zone.at),

@@ -10,8 +10,12 @@ use crate::input::written::operation::{
 };
 use crate::input::{Air, Release, Resistance, Riders, Scenario, SeatName, Wind, Zone};
 
-/// Most cases a grid may have.
-const GRID_CASES: usize = 10_000;
+/// Most scenarios, and most cases of a grid.
+const CASES: usize = 10_000;
+/// Most kinds of resistance.
+const RESISTANCES: usize = 1000;
+/// Most zones.
+const ZONES: usize = 1000;
 
 /// What all scenarios of an operation share.
 pub(super) struct Common {
@@ -38,13 +42,17 @@ impl Common {
         let written = lower.require(file.resistance, root, "resistance");
         let resistance_whole = written.is_some();
         let list = written.map_or(Vec::new(), |written| {
-            if written.value.0.is_empty() {
-                lower.error(&written.at, "found no resistance, expected at least one");
-            }
+            lower.count(
+                &written.at,
+                written.value.0.len(),
+                RESISTANCES,
+                "resistances",
+            );
             written.value.0
         });
         let resistance = list
             .into_iter()
+            .take(RESISTANCES)
             .filter_map(|entry| named_resistance(entry, lower));
         let resistance = resistance.collect();
         let air = file
@@ -52,10 +60,13 @@ impl Common {
             .map(|air| air.given().and_then(|air| plain_air(air, lower)));
         let zone_list = file.zones.map_or(Field::Missing, |field| field);
         let bad = matches!(zone_list, Field::Bad);
-        let (zones, whole) = zones(
-            zone_list.given().map_or(Vec::new(), |list| list.value),
-            lower,
-        );
+        let list = zone_list.given().map_or(Vec::new(), |list| {
+            if list.value.len() > ZONES {
+                lower.count(&list.at, list.value.len(), ZONES, "zones");
+            }
+            list.value
+        });
+        let (zones, whole) = zones(list.into_iter().take(ZONES).collect(), lower);
         Self {
             resistance,
             resistance_whole,
@@ -86,13 +97,11 @@ impl Common {
     }
 
     /// The air of a scenario that has none of its own.
-    fn air(&self, at: &At, lower: &mut Lower) -> Option<Air> {
+    fn air(&self, lower: &mut Lower) -> Option<Air> {
         self.air.unwrap_or_else(|| {
-            let hint = "give `air` in the operation or in the scenario";
-            lower.missing(at, "air");
-            if let Some(last) = lower.found.last_mut() {
-                last.hints.push(hint.to_owned());
-            }
+            let hint = "give `air` in the operation, or in every scenario";
+            let mistake = lower.mistake(&self.root, "missing key `air`").key("air");
+            lower.found.push(mistake.hint(hint));
             None
         })
     }
@@ -134,8 +143,10 @@ impl Start {
         self
     }
 
-    fn complete(self, at: &At, lower: &mut Lower) -> Option<Release> {
-        if !self.wrong {
+    fn complete(self, at: &At, root: &At, lower: &mut Lower) -> Option<Release> {
+        if !self.wrong && self.station.is_none() && self.speed_m_s.is_none() {
+            lower.missing(root, "release");
+        } else if !self.wrong {
             if self.station.is_none() {
                 lower.missing(at, "release.station");
             }
@@ -267,11 +278,9 @@ pub(super) fn scenarios(
 ) -> Option<Vec<Scenario>> {
     let list = field.given()?;
     let count = list.value.0.len();
-    if count == 0 {
-        lower.error(&list.at, "found no scenario, expected at least one");
-    }
+    lower.count(&list.at, count, CASES, "scenarios");
     let mut lowered = Vec::new();
-    for (name, keys) in list.value.given() {
+    for (name, keys) in list.value.given().into_iter().take(CASES) {
         lowered.extend(scenario(name, keys, common, lower));
     }
     (lowered.len() == count && count > 0).then_some(lowered)
@@ -295,7 +304,7 @@ fn scenario(
     let resistance = resistance.and_then(|name| common.resistance(&name, lower));
     let air = match keys.air {
         Some(field) => field.given().and_then(|air| plain_air(air, lower)),
-        None => common.air(&at, lower),
+        None => common.air(lower),
     };
     let wind = match keys.wind {
         Some(field) => field
@@ -305,11 +314,12 @@ fn scenario(
         None => Some(None),
     };
     let zones = scenario_zones(keys.without, keys.zones, common, lower);
-    let release = common
-        .release
-        .clone()
-        .with(keys.release, lower)
-        .complete(&at, lower);
+    let release =
+        common
+            .release
+            .clone()
+            .with(keys.release, lower)
+            .complete(&at, &common.root, lower);
     Some(Scenario {
         place: lower.place(&name.at),
         name: name.value,
@@ -329,7 +339,7 @@ fn lowered_riders(written: WrittenRiders, at: &At, lower: &mut Lower) -> Option<
     };
     let seats = lower.require(keys.seats, at, "seats")?;
     let count = seats.value.len();
-    let items = lower.items(seats, "seat");
+    let items = lower.items(seats, 1000, "seats");
     let names: Vec<SeatName> = items
         .into_iter()
         .filter_map(|item| seat_name(item, lower))
@@ -454,9 +464,12 @@ pub(super) fn grid(
     let has_air = lists.iter().flatten().any(|list| list.is_air());
     let air = match has_air {
         true => None,
-        false => Some(common.air(&at, lower)),
+        false => Some(common.air(lower)),
     };
-    let release = common.release.clone().complete(&common.root, lower);
+    let release = common
+        .release
+        .clone()
+        .complete(&common.root, &common.root, lower);
     let mut lists = lists.into_iter().collect::<Option<Vec<_>>>()?;
     lists.sort_by_key(|list| list.at.span.start);
     let base = Base {
@@ -487,11 +500,12 @@ fn choices<T>(
     let (at, count) = (list.at.clone(), list.value.len());
     let mut names = Names::of(what);
     let mut values = Vec::new();
-    for item in lower.items(list, "value") {
+    for item in lower.items(list, CASES, "values") {
         let item_at = item.at.clone();
         if let Some((name, value)) = choice(item, lower) {
-            names.add_text(&name, &item_at, lower);
-            values.push((name, value));
+            if names.add_text(&name, &item_at, lower) {
+                values.push((name, value));
+            }
         }
     }
     (values.len() == count && count > 0).then_some(Choices { at, values })
@@ -538,8 +552,8 @@ struct Base {
 fn combine(lists: &[Choices], base: &Base, at: &At, lower: &mut Lower) -> Option<Vec<Scenario>> {
     let lengths = lists.iter().map(|list| list.values.len());
     let count = lengths.fold(1_usize, usize::saturating_mul);
-    if count > GRID_CASES {
-        let message = format!("a grid of {count} cases, expected at most {GRID_CASES}");
+    if count > CASES {
+        let message = format!("a grid of {count} cases, expected at most {CASES}");
         lower.error(at, message);
         return None;
     }

@@ -86,7 +86,7 @@ fn elements_source(
     let count = written.value.len();
     let mut grade_rad = start.grade_rad;
     let mut elements = Vec::new();
-    for item in lower.items(written, "element") {
+    for item in lower.items(written, 10_000, "elements") {
         elements.extend(element(item, &mut grade_rad, names, lower));
     }
     (elements.len() == count).then_some(ElementTrack { start, elements })
@@ -117,6 +117,8 @@ fn element(
     if let Some(name) = &name {
         names.add(name, lower);
     }
+    // What could not be read may change something.
+    let is_unread = is_bad(&keys.turn) || is_bad(&keys.grade_to) || is_bad(&keys.grade_by);
     let angle = |angle: Located<Quantity<Angle>>| (angle.value.si, angle.at);
     let sided = |angle: Located<SidedAngle>| (angle.value.left_rad, angle.at);
     let grade = change(
@@ -138,7 +140,7 @@ fn element(
         Some(Change::By(by)) => *grade_rad += by,
         None => {}
     }
-    let bends = turn_left_rad != 0.0 || *grade_rad != before_rad;
+    let bends = is_unread || turn_left_rad != 0.0 || *grade_rad != before_rad;
     let extent = extent(keys.length, keys.radius, bends, &at, lower);
     let ease = keys
         .ease
@@ -156,6 +158,10 @@ fn element(
         bank_ease: bank_ease?,
         place: lower.place(&at),
     })
+}
+
+fn is_bad<T>(field: &Option<Field<T>>) -> bool {
+    matches!(field, Some(Field::Bad))
 }
 
 fn change(
@@ -290,7 +296,7 @@ fn lowered_fit(fit: Located<WordOr<FitWord, FitKeys>>, lower: &mut Lower) -> Opt
     match fit.value {
         WordOr::Word(FitWord::Exact) => Some(Fit::Exact),
         WordOr::Word(FitWord::Auto) => {
-            lower.error(&fit.at, "`fit: auto` is not built yet");
+            lower.later_word(&fit.at);
             None
         }
         WordOr::Keys(_) => {

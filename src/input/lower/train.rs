@@ -11,6 +11,8 @@ use crate::input::{Car, Inertia, Seat, Train};
 
 /// Most cars that are read.
 const CARS: u64 = 1000;
+/// Most seats of a car.
+const SEATS: usize = 100;
 /// Axles of neighbouring cars nearer than this are one shared axle, m.
 const SHARED_AXLE_M: f64 = 0.001;
 
@@ -40,7 +42,7 @@ fn all_cars(list: Located<Vec<Field<CarKeys>>>, lower: &mut Lower) -> Option<Vec
     let entries = list.value.len();
     let mut cars = Vec::new();
     let mut read = 0;
-    for entry in lower.items(list, "car") {
+    for entry in lower.items(list, CARS as usize, "cars") {
         let (count, car) = one_entry(entry, CARS - cars.len() as u64, lower);
         let Some(car) = car else { continue };
         read += 1;
@@ -70,7 +72,8 @@ fn one_entry(entry: Located<CarKeys>, room: u64, lower: &mut Lower) -> (usize, O
                 1
             }
             many if many > room => {
-                let message = format!("found {many} cars, expected at most {CARS} in a train");
+                let all = (CARS - room).saturating_add(many);
+                let message = format!("found {all} cars, expected at most {CARS} in a train");
                 lower.error(&count.at, message);
                 1
             }
@@ -108,7 +111,7 @@ fn car(at: &At, keys: CarKeys, lower: &mut Lower) -> Option<Car> {
     let inertia = optional(keys.inertia).map(|inertia| lowered_inertia(inertia, lower));
     let seats = lower
         .require(keys.seats, at, "seats")
-        .map(|seats| all_seats(seats.value, lower));
+        .and_then(|seats| all_seats(seats, lower));
     Some(Car {
         length_m: length_m?,
         axles_m: axles_m?,
@@ -212,12 +215,18 @@ fn lowered_inertia(inertia: Located<InertiaKeys>, lower: &mut Lower) -> Option<I
     })
 }
 
-fn all_seats(list: Vec<Field<SeatKeys>>, lower: &mut Lower) -> Vec<Seat> {
+fn all_seats(list: Located<Vec<Field<SeatKeys>>>, lower: &mut Lower) -> Option<Vec<Seat>> {
+    let count = list.value.len();
+    if count > SEATS {
+        lower.count(&list.at, count, SEATS, "seats");
+        return None;
+    }
     let mut names = Names::of("seat");
-    list.into_iter()
-        .filter_map(Field::given)
+    let given = list.value.into_iter().filter_map(Field::given);
+    let seats: Vec<Seat> = given
         .filter_map(|entry| seat(entry, &mut names, lower))
-        .collect()
+        .collect();
+    (seats.len() == count).then_some(seats)
 }
 
 fn seat(entry: Located<SeatKeys>, names: &mut Names, lower: &mut Lower) -> Option<Seat> {

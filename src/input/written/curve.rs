@@ -43,7 +43,10 @@ impl<'de> Visitor<'de> for CurveVisitor {
     fn visit_seq<A: SeqAccess<'de>>(self, mut list: A) -> Result<Curve, A::Error> {
         let mut points = Vec::new();
         while let Some(pair) = list.next_element::<Field<Pair>>()? {
-            points.extend(pair.given().map(|pair| pair.value));
+            points.push(
+                pair.given()
+                    .map_or((Field::Bad, Field::Bad), |pair| pair.value),
+            );
         }
         Ok(Curve(points))
     }
