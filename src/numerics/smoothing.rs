@@ -56,7 +56,12 @@ impl Smoother {
         let point = |(&x, &weight): (&f64, &f64)| {
             let span = knot_span(&knots, count, x);
             let of_order = |order| basis_derivatives(&knots, span, x, order);
-            Point { first: span - HALF, basis: of_order(0), slopes: of_order(1), weight }
+            Point {
+                first: span - HALF,
+                basis: of_order(0),
+                slopes: of_order(1),
+                weight,
+            }
         };
         let points = parameters
             .iter()
@@ -97,14 +102,26 @@ impl Smoother {
         }
         factors.solve(&mut coefficients);
         let sums = |basis: fn(&Point) -> &[f64; HALF + 1]| {
-            self.points.iter().map(|p| sum(&coefficients[p.first..], basis(p))).collect()
+            self.points
+                .iter()
+                .map(|p| sum(&coefficients[p.first..], basis(p)))
+                .collect()
         };
         let (fitted, slopes) = (sums(|p| &p.basis), sums(|p| &p.slopes));
         let inverse = factors.inverse_band();
         let leverage = |p: &Point| p.weight * quadratic(&inverse, p.first, &p.basis);
         let leverages = self.points.iter().map(leverage).collect();
-        let posterior = Posterior { knots: self.knots.clone(), inverse };
-        Some(Smoothed { coefficients, fitted, slopes, leverages, posterior })
+        let posterior = Posterior {
+            knots: self.knots.clone(),
+            inverse,
+        };
+        Some(Smoothed {
+            coefficients,
+            fitted,
+            slopes,
+            leverages,
+            posterior,
+        })
     }
 }
 
@@ -112,6 +129,16 @@ impl<const N: usize> Smoothed<N> {
     /// The fitted curve.
     pub fn curve(&self) -> Curve<N> {
         Curve::from_coefficients(&self.posterior.knots, &self.coefficients)
+    }
+
+    /// The periodic curve over the points `first..first + count`, the middle of data that repeat
+    /// on both sides: its coefficients are those of that lap, wrapped.
+    pub fn lap(&self, first: usize, count: usize) -> Curve<N> {
+        // The basis function that peaks at point i has index i + 2.
+        let at_point = |i: usize| self.coefficients[first + (i + count - 2) % count + 2];
+        let coefficients = (0..count + HALF).map(at_point).collect::<Vec<_>>();
+        let knots = &self.posterior.knots[first..=first + count + 2 * HALF];
+        Curve::from_coefficients(knots, &coefficients)
     }
 }
 
