@@ -1,5 +1,15 @@
 //! Physics against answers from outside: closed forms, published values, reference libraries.
-#![allow(missing_docs, unreachable_pub, clippy::unwrap_used)]
+//!
+//! Each test names its source beside the number. `exact_` means a closed form, `published_` a
+//! number printed elsewhere, `converges_` an order of convergence.
+#![allow(missing_docs, unreachable_pub, clippy::unwrap_used, clippy::excessive_precision)]
 
+mod air;
+mod bodies;
 mod fixture;
+mod geometry;
+mod loads;
 mod motion;
+mod signals;
+mod splines;
+mod zones;
