@@ -143,18 +143,18 @@ fn exact_mass_centre_above_a_rolled_helix() {
         let history = run(&poses, &train, &release, &goal);
         for (s, speed, accel, felt) in states {
             let at = state_when_at(&history, lead_m(s));
-            close(at.speed_m_s, speed, 2e-6);
-            close(at.acceleration_m_s2, accel, 2e-6);
+            close(at.speed_m_s, speed, 1e-7);
+            close(at.acceleration_m_s2, accel, 1e-7);
             let found = felt_g(&poses, 0, &seat(0.2, 0.5, 0.9), at);
-            close_vectors(found, felt.into(), 2e-6);
+            close_vectors(found, felt.into(), 1e-7);
         }
     }
 }
 
-/// a = 15 m, b = −2 m, roll 0 at `lead_in_m` and then 0.04 rad/m; the ramp of 10 m lies before it.
+/// a = 15 m, b = −2 m, roll 0 at `lead_in_m` and 0.04 rad/m from a metre before it, where a ramp ends.
 fn rolled_helix(lead_in_m: f64) -> crestfall::spine::Spine {
     let (a, b, length_m) = (15.0f64, -2.0f64, 100.0);
-    let ramp = lead_in_m / length_m;
+    let ramp = (lead_in_m - 1.0) / length_m;
     // Level part: rate Δ/((1 − f) L), reached at f L after half of f L times that rate.
     let by_rate = |rate: f64| rate * (1.0 - ramp) * length_m;
     let bank_rate = left(0.04);
@@ -167,7 +167,7 @@ fn rolled_helix(lead_in_m: f64) -> crestfall::spine::Spine {
     };
     let start = Start {
         grade_rad: (b / a).atan(),
-        bank_left_rad: -0.5 * lead_in_m * bank_rate,
+        bank_left_rad: -(0.5 * (lead_in_m - 1.0) + 1.0) * bank_rate,
         ..Start::default()
     };
     element_spine(start, vec![turn])
