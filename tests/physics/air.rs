@@ -44,7 +44,11 @@ fn exact_other_temperatures() {
         (2000.0, 20.0, 0.9382881596369),
     ] {
         let standard_k = 288.15 - 0.0065 * altitude_m;
-        close(at_altitude(altitude_m, Some(standard_k + offset_k)), density, 2e-11);
+        close(
+            at_altitude(altitude_m, Some(standard_k + offset_k)),
+            density,
+            2e-11,
+        );
     }
 }
 
@@ -106,5 +110,9 @@ fn exact_wind_on_a_climb() {
     });
     let history = run_for(&poses, &train, &scenario, 0.1);
     let accel = history.state_at(0.0).unwrap().acceleration_m_s2;
-    close(accel, -0.5 * G - (3.0 + 5.19615242271f64).powi(2) / 1000.0, 1e-11);
+    close(
+        accel,
+        -0.5 * G - (3.0 + 5.19615242271f64).powi(2) / 1000.0,
+        1e-11,
+    );
 }

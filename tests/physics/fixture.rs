@@ -5,9 +5,9 @@ use std::sync::Arc;
 
 use crestfall::diagnostic::{Place, Source};
 use crestfall::input::{
-    Air, Car, Change, Columns, Device, Ease, Element, ElementTrack, Extent, Fit, Goal,
-    GravityTerm, Inertia, PointTable, Release, Resistance, Riders, Scenario, Seat, Start, Track,
-    TrackSource, Train, Zone,
+    Air, Car, Change, Columns, Device, Ease, Element, ElementTrack, Extent, Fit, Goal, GravityTerm,
+    Inertia, PointTable, Release, Resistance, Riders, Scenario, Seat, Start, Track, TrackSource,
+    Train, Zone,
 };
 use crestfall::loads::car_loads;
 use crestfall::motion::{History, Ride, Samples, State, simulate};
@@ -436,7 +436,8 @@ pub fn boole(from: f64, to: f64, panels: usize, f: impl Fn(f64) -> f64) -> f64 {
         .map(|i| {
             let x = from + i as f64 * h;
             let at = |k: f64| f(x + 0.25 * k * h);
-            h / 90.0 * (7.0 * at(0.0) + 32.0 * at(1.0) + 12.0 * at(2.0) + 32.0 * at(3.0) + 7.0 * at(4.0))
+            h / 90.0
+                * (7.0 * at(0.0) + 32.0 * at(1.0) + 12.0 * at(2.0) + 32.0 * at(3.0) + 7.0 * at(4.0))
         })
         .sum()
 }

@@ -41,7 +41,11 @@ fn exact_circle() {
     let (a, b) = (spine.at(30.0), spine.at(32.0));
     close(a.curvature_1_m(), 0.04, 1e-16);
     close(a.radius_m().unwrap(), radius_m, 1e-12);
-    close((b.position_m - a.position_m).norm(), 1.999466709331708, 1e-12);
+    close(
+        (b.position_m - a.position_m).norm(),
+        1.999466709331708,
+        1e-12,
+    );
     let middle = 0.5 * (a.position_m + b.position_m);
     let sagitta_m = (spine.at(31.0).position_m - middle).norm();
     close(sagitta_m, 0.019997333475551492, 1e-12);
@@ -138,7 +142,11 @@ fn exact_clothoids() {
         close(y, y_m, 1e-11);
         close(heading, length_m / (2.0 * radius_m), 1e-14);
         close(spine.at(length_m).curvature_1_m(), 1.0 / radius_m, 1e-14);
-        close(spine.at(0.25 * length_m).curvature_1_m(), 0.25 / radius_m, 1e-14);
+        close(
+            spine.at(0.25 * length_m).curvature_1_m(),
+            0.25 / radius_m,
+            1e-14,
+        );
     }
 }
 
@@ -174,7 +182,13 @@ fn exact_linear_curvature() {
 /// rule over twenty thousand panels of our own formula for the tangent: to 1e-9 m.
 #[test]
 fn exact_position_over_a_kilometre() {
-    let changes = [(60.0, 140.0), (-110.0, -200.0), (50.0, 170.0), (360.0, -90.0), (0.0, 250.0)];
+    let changes = [
+        (60.0, 140.0),
+        (-110.0, -200.0),
+        (50.0, 170.0),
+        (360.0, -90.0),
+        (0.0, 250.0),
+    ];
     let length_m = 200.0;
     let elements = changes.map(|(grade_deg, turn_deg)| Element {
         grade: Some(Change::By(grade_deg * DEG)),
@@ -188,7 +202,10 @@ fn exact_position_over_a_kilometre() {
         let angles = |s: f64| {
             let x = s / length_m;
             let part = x.powi(3) * (10.0 - 15.0 * x + 6.0 * x * x);
-            (grade + grade_deg * DEG * part, direction + turn_deg * DEG * part)
+            (
+                grade + grade_deg * DEG * part,
+                direction + turn_deg * DEG * part,
+            )
         };
         let tangent: [&dyn Fn(f64) -> f64; 3] = [
             &|s| angles(s).1.cos() * angles(s).0.cos(),
@@ -229,10 +246,18 @@ fn exact_bank_to_the_left() {
     let spine = element_spine(east(), vec![roll]);
     let end = spine.at(20.0);
     close_vectors(end.up.value, Vector3::new(0.0, 0.5, 0.75f64.sqrt()), 1e-14);
-    close_vectors(end.left().value, Vector3::new(0.0, 0.75f64.sqrt(), -0.5), 1e-14);
+    close_vectors(
+        end.left().value,
+        Vector3::new(0.0, 0.75f64.sqrt(), -0.5),
+        1e-14,
+    );
     close(end.bank_left_rad().unwrap(), 30.0 * DEG, 1e-14);
     let rate = left(30.0 * DEG / 15.0);
-    close_vectors(spine.at(10.0).rotation_rad_m(), Vector3::new(rate, 0.0, 0.0), 1e-14);
+    close_vectors(
+        spine.at(10.0).rotation_rad_m(),
+        Vector3::new(rate, 0.0, 0.0),
+        1e-14,
+    );
 }
 
 /// A08 (Bishop 1975): where a plane curve inflects, the normal jumps; the frame must not.

@@ -88,7 +88,11 @@ fn exact_clothoid_loop() {
 
 /// A loop in the x-z plane given by its radius of curvature over the heading θ from the level:
 /// points dx = ρ cos θ dθ, dz = ρ sin θ dθ, by Boole's rule.
-fn loop_points(count: usize, to_rad: f64, rho: impl Fn(f64) -> f64) -> (Vec<Vector3<f64>>, Vec<Vector3<f64>>) {
+fn loop_points(
+    count: usize,
+    to_rad: f64,
+    rho: impl Fn(f64) -> f64,
+) -> (Vec<Vector3<f64>>, Vec<Vector3<f64>>) {
     let (mut x, mut z) = (0.0, 0.0);
     let (mut points, mut tangents) = (Vec::new(), Vec::new());
     for i in 0..count {
@@ -112,7 +116,10 @@ fn felt_in_loop(spine: &Spine, v0: f64, stations: &[f64]) -> Vec<(f64, Vector3<f
     let history = run(&poses, &train, &scenario, &goal);
     let at = |&s: &f64| {
         let state = state_when_at(&history, lead(s));
-        (state.speed_m_s, felt_g(&poses, 0, &seat(0.0, 0.0, 0.0), state))
+        (
+            state.speed_m_s,
+            felt_g(&poses, 0, &seat(0.0, 0.0, 0.0), state),
+        )
     };
     stations.iter().map(at).collect()
 }
@@ -193,7 +200,13 @@ fn banked_circle(radius_m: f64, bank_left_deg: f64) -> Spine {
     let circle = |t: f64| Vector3::new(t.cos(), t.sin(), 0.0) * radius_m;
     let centre_m = lap_points(TAU, 400, circle);
     let bank_left_rad = vec![bank_left_deg * DEG; 400];
-    point_spine(Columns::Bank { centre_m, bank_left_rad }, true)
+    point_spine(
+        Columns::Bank {
+            centre_m,
+            bank_left_rad,
+        },
+        true,
+    )
 }
 
 /// C06 (Meriam & Kraige, *Dynamics*, sec. 3/5): lateral toward the centre (v²/R cos − g sin)/g, fz
@@ -333,9 +346,17 @@ fn exact_roll_about_the_rail() {
         let x = TAU * s / length_m;
         x - x.sin()
     };
-    let centre_m = (0..count).map(|i| Vector3::new(along(i), 0.0, 0.0)).collect();
+    let centre_m = (0..count)
+        .map(|i| Vector3::new(along(i), 0.0, 0.0))
+        .collect();
     let bank_left_rad = (0..count).map(|i| left(roll(along(i)))).collect();
-    let spine = point_spine(Columns::Bank { centre_m, bank_left_rad }, false);
+    let spine = point_spine(
+        Columns::Bank {
+            centre_m,
+            bank_left_rad,
+        },
+        false,
+    );
     let train = point_train(SHORT_M, 900.0);
     let poses = Poses::new(&spine, &train).unwrap();
     for (t, fy, fz) in [
@@ -366,8 +387,16 @@ fn exact_straight_slopes() {
     close_vectors(felt(-30.0, half * G), Vector3::new(0.0, 0.0, cos30), 1e-12);
     close_vectors(felt(-60.0, cos30 * G), Vector3::new(0.0, 0.0, half), 1e-12);
     close_vectors(felt(-30.0, 0.0), Vector3::new(-half, 0.0, cos30), 1e-12);
-    close_vectors(felt(0.0, 12.0), Vector3::new(1.22365945557, 0.0, 1.0), 1e-11);
-    close_vectors(felt(0.0, -6.0), Vector3::new(-0.6118297277868, 0.0, 1.0), 1e-12);
+    close_vectors(
+        felt(0.0, 12.0),
+        Vector3::new(1.22365945557, 0.0, 1.0),
+        1e-11,
+    );
+    close_vectors(
+        felt(0.0, -6.0),
+        Vector3::new(-0.6118297277868, 0.0, 1.0),
+        1e-12,
+    );
 }
 
 /// A seat turned and reclined.
@@ -389,7 +418,11 @@ fn exact_turned_and_reclined_seats() {
     let (s, c) = (20.0 * DEG).sin_cos();
     for faces_deg in [0.0, 180.0, 90.0, -90.0, 35.0] {
         close_vectors(felt(&turned(faces_deg, 0.0), 0.0), Vector3::z(), 1e-13);
-        close_vectors(felt(&turned(faces_deg, 20.0), 0.0), Vector3::new(s, 0.0, c), 1e-13);
+        close_vectors(
+            felt(&turned(faces_deg, 20.0), 0.0),
+            Vector3::new(s, 0.0, c),
+            1e-13,
+        );
     }
     let launched = [
         (0.0, Vector3::new(1.0, 0.0, 1.0)),
@@ -420,7 +453,13 @@ fn exact_without_gravity() {
     };
     let seats = [turned(0.0, 0.0)];
     let loads = car_loads(&poses, 0, &seats, &samples, G, GravityTerm::Excluded);
-    let at = |i: usize| Vector3::new(loads.seats[0][0][i], loads.seats[0][1][i], loads.seats[0][2][i]);
+    let at = |i: usize| {
+        Vector3::new(
+            loads.seats[0][0][i],
+            loads.seats[0][1][i],
+            loads.seats[0][2][i],
+        )
+    };
     close_vectors(at(0), Vector3::zeros(), 1e-13);
     close_vectors(at(1), Vector3::x(), 1e-13);
 }

@@ -44,7 +44,11 @@ fn exact_stop_and_roll_back_on_an_incline() {
     assert_eq!(history.reversals.len(), 1);
     let reversal = history.reversals[0];
     close(reversal.station_m, 1.0 + 39.42299588203197, 1e-9);
-    close(reversal.time_s, 20.0 / (G * (0.5 + 0.02 * 0.75f64.sqrt())), 1e-9);
+    close(
+        reversal.time_s,
+        20.0 / (G * (0.5 + 0.02 * 0.75f64.sqrt())),
+        1e-9,
+    );
     close(history.end_station_m, 1.0, 1e-12);
     close(last(&history).speed_m_s, -19.318774421092494, 1e-9);
 }
@@ -155,7 +159,11 @@ fn exact_drag_uphill_and_level() {
     let mut scenario = scenario(2.0, 22.0);
     scenario.resistance = drag(2.4, 0.02);
     let history = run(&up, &train, &scenario, &Goal::TrackEnd);
-    close(history.reversals[0].station_m, 2.0 + 47.045090638663165, 1e-9);
+    close(
+        history.reversals[0].station_m,
+        2.0 + 47.045090638663165,
+        1e-9,
+    );
     close(history.reversals[0].time_s, 4.2966538688322245, 1e-9);
     let (level, train) = slope(1000.0, 0.0, 5000.0);
     let history = run(&level, &train, &scenario, &Goal::TrackEnd);
@@ -165,7 +173,11 @@ fn exact_drag_uphill_and_level() {
     let history = run(&level, &train, &scenario, &Goal::TrackEnd);
     let speed = state_when_at(&history, 102.0).speed_m_s;
     close(speed, 21.362615462843041, 1e-9);
-    close(history.state_at(10.0).unwrap().speed_m_s, 20.663485742194838, 1e-9);
+    close(
+        history.state_at(10.0).unwrap().speed_m_s,
+        20.663485742194838,
+        1e-9,
+    );
 }
 
 /// B06, terminal speed: released at it, the train keeps it (126.887 m/s).
@@ -316,7 +328,11 @@ fn exact_large_swings() {
         let history = run_for(&poses, &train, &release, 1.01 * period_s);
         let half = history.reversals[0];
         close(half.time_s, 0.5 * period_s, 2e-8 * period_s);
-        close(half.station_m, arc.leading_m(1.0, amplitude_deg * DEG), 1e-7);
+        close(
+            half.station_m,
+            arc.leading_m(1.0, amplitude_deg * DEG),
+            1e-7,
+        );
         close(history.reversals[1].time_s, period_s, 4e-8 * period_s);
     }
 }
@@ -342,7 +358,10 @@ fn exact_angle_of_a_swing() {
 fn exact_full_turn_and_separatrix() {
     let (arc, train, poses) = bead(20.0, -20.0, 380.0);
     let from_m = arc.leading_m(1.0, 0.0);
-    let (whole, goal) = (scenario(from_m, (6.0 * G * 20.0).sqrt()), until(arc.leading_m(1.0, TAU)));
+    let (whole, goal) = (
+        scenario(from_m, (6.0 * G * 20.0).sqrt()),
+        until(arc.leading_m(1.0, TAU)),
+    );
     let history = run(&poses, &train, &whole, &goal);
     close(history.duration_s, 4.7316468070439379, 1e-8);
     let edge = scenario(from_m, (4.0 * G * 20.0).sqrt());
@@ -397,7 +416,11 @@ fn exact_swing_with_normal_friction() {
     let scenario = running(arc.leading_m(1.0, -60.0 * DEG), 0.0, 0.03);
     let history = run(&poses, &train, &scenario, &Goal::TrackEnd);
     let first = history.reversals[0];
-    close(arc.grade_rad(first.station_m - half_arc_m(20.0, 1.0)), 0.94465529818152229, 1e-8);
+    close(
+        arc.grade_rad(first.station_m - half_arc_m(20.0, 1.0)),
+        0.94465529818152229,
+        1e-8,
+    );
     let bottom_m = arc.leading_m(1.0, 0.0);
     let (mut low, mut high) = (0.0, first.time_s);
     for _ in 0..60 {
@@ -405,7 +428,11 @@ fn exact_swing_with_normal_friction() {
         let short = history.state_at(middle).unwrap().station_m < bottom_m;
         if short { low = middle } else { high = middle }
     }
-    close(history.state_at(low).unwrap().speed_m_s, 13.354716417591607, 1e-8);
+    close(
+        history.state_at(low).unwrap().speed_m_s,
+        13.354716417591607,
+        1e-8,
+    );
 }
 
 /// B13 with this program's law, c_run |F_u| + c_side |F_l| where the catalogue has the magnitude of
@@ -439,12 +466,16 @@ fn exact_train_over_a_crest() {
     let own = 2.0 * (0.5 * chord_m / radius_m).asin();
     let link_m = 2.0 * radius_m * (0.5 * (pitch - own)).sin();
     let mut cars = vec![car_on_circle(chord_m, 700.0, -radius_m); 7];
-    cars.iter_mut().for_each(|car| car.length_m = chord_m + link_m);
+    cars.iter_mut()
+        .for_each(|car| car.length_m = chord_m + link_m);
     let train = train(cars);
     let poses = Poses::new(&arc.spine, &train).unwrap();
     let front_at = |grade_rad: f64| arc.leading_m(chord_m, grade_rad);
     // The leading car is three pitches ahead of the middle.
-    let (release, goal) = (scenario(front_at(-3.0 * pitch), 6.0), until(front_at(-6.0 * pitch)));
+    let (release, goal) = (
+        scenario(front_at(-3.0 * pitch), 6.0),
+        until(front_at(-6.0 * pitch)),
+    );
     let history = run(&poses, &train, &release, &goal);
     let rider = seat(0.0, 0.0, height_of_rail_m(chord_m, -radius_m));
     // When the rear car is on the crest, six pitches behind the leading one.
@@ -468,16 +499,24 @@ fn exact_train_climbing_a_crest() {
     let own = 2.0 * (0.5 * chord_m / 20.0).asin();
     let mut cars = vec![car_on_circle(chord_m, 700.0, -20.0); 7];
     let link_m = 40.0 * (0.5 * (pitch - own)).sin();
-    cars.iter_mut().for_each(|car| car.length_m = chord_m + link_m);
+    cars.iter_mut()
+        .for_each(|car| car.length_m = chord_m + link_m);
     let train = train(cars);
     let poses = Poses::new(&arc.spine, &train).unwrap();
     let front_m = arc.leading_m(chord_m, 0.0);
-    let (release, goal) = (scenario(front_m, 7.900339837800855), until(arc.leading_m(chord_m, -3.0 * pitch)));
+    let (release, goal) = (
+        scenario(front_m, 7.900339837800855),
+        until(arc.leading_m(chord_m, -3.0 * pitch)),
+    );
     let history = run(&poses, &train, &release, &goal);
     let start = history.state_at(0.0).unwrap();
     close(start.acceleration_m_s2, -3.4806781977649456, 1e-9);
     let rider = seat(0.0, 0.0, height_of_rail_m(chord_m, -20.0));
-    close(felt_g(&poses, 0, &rider, start).x, -0.35493039904197107, 1e-9);
+    close(
+        felt_g(&poses, 0, &rider, start).x,
+        -0.35493039904197107,
+        1e-9,
+    );
     close(last(&history).speed_m_s, 6.0, 1e-9);
 }
 
@@ -494,7 +533,8 @@ fn exact_time_over_a_crest() {
     let own = 2.0 * (0.5 * chord_m / 20.0).asin();
     let mut cars = vec![car_on_circle(chord_m, 700.0, -20.0); 7];
     let link_m = 40.0 * (0.5 * (pitch - own)).sin();
-    cars.iter_mut().for_each(|car| car.length_m = chord_m + link_m);
+    cars.iter_mut()
+        .for_each(|car| car.length_m = chord_m + link_m);
     let train = train(cars);
     let poses = Poses::new(&arc.spine, &train).unwrap();
     let release = scenario(arc.leading_m(chord_m, -3.0 * pitch), 6.0);

@@ -17,15 +17,31 @@ fn published_butterworth_sections() {
         (
             (5.0, 200.0),
             [
-                (0.005808126894364892, -1.8638004920752352, 0.8870329996526948),
-                (0.005378494217712605, -1.7259333950369407, 0.7474473719077911),
+                (
+                    0.005808126894364892,
+                    -1.8638004920752352,
+                    0.8870329996526948,
+                ),
+                (
+                    0.005378494217712605,
+                    -1.7259333950369407,
+                    0.7474473719077911,
+                ),
             ],
         ),
         (
             (10.0, 1000.0),
             [
-                (0.00096348432551229066, -1.9492159580258414, 0.95306989532789058),
-                (0.00093253841562947442, -1.8866095826215064, 0.89033973628402429),
+                (
+                    0.00096348432551229066,
+                    -1.9492159580258414,
+                    0.95306989532789058,
+                ),
+                (
+                    0.00093253841562947442,
+                    -1.8866095826215064,
+                    0.89033973628402429,
+                ),
             ],
         ),
     ];
@@ -67,10 +83,22 @@ fn exact_butterworth_response() {
     ] {
         close(response(&filter, f_hz, 200.0).norm(), gain, 1e-12);
     }
-    close(response(&filter, 1.0, 200.0).arg(), -0.524535506894251, 1e-10);
-    close(response(&filter, 2.0, 200.0).arg(), -1.0691372936033319, 1e-10);
+    close(
+        response(&filter, 1.0, 200.0).arg(),
+        -0.524535506894251,
+        1e-10,
+    );
+    close(
+        response(&filter, 2.0, 200.0).arg(),
+        -1.0691372936033319,
+        1e-10,
+    );
     close(filter.delay_s(), 0.083007282662113399, 1e-15);
-    close(Butterworth::new(4, 10.0, 1000.0).delay_s(), 0.041575507668458943, 1e-15);
+    close(
+        Butterworth::new(4, 10.0, 1000.0).delay_s(),
+        0.041575507668458943,
+        1e-15,
+    );
 }
 
 /// Any number of poles: |H|² = 1/(1 + W^(2n)), and the delay is minus the slope of the phase at 0.
@@ -127,7 +155,9 @@ fn published_step_response() {
         for &(k, value) in samples {
             close(signal[k + 1], value, 1e-11);
         }
-        let largest = (0..700).max_by(|&a, &b| signal[a].total_cmp(&signal[b])).unwrap();
+        let largest = (0..700)
+            .max_by(|&a, &b| signal[a].total_cmp(&signal[b]))
+            .unwrap();
         assert_eq!(largest, peak_at + 1);
         close(signal[largest], peak, 1e-11);
     }
@@ -147,11 +177,16 @@ fn published_half_sines() {
             _ => 0.0,
         };
         let signal = (0..400).map(half_sine).collect::<Vec<_>>();
-        let lowpass = Filter::Butterworth { poles: 4, corner_hz: 5.0 };
+        let lowpass = Filter::Butterworth {
+            poles: 4,
+            corner_hz: 5.0,
+        };
         let out = filtered(&[signal.clone(), signal.clone(), signal], 200.0, lowpass);
         close(out.delay_s, 0.083007282662113399, 1e-15);
         for axis in &out.axes_g {
-            let largest = (0..400).max_by(|&a, &b| axis[a].total_cmp(&axis[b])).unwrap();
+            let largest = (0..400)
+                .max_by(|&a, &b| axis[a].total_cmp(&axis[b]))
+                .unwrap();
             assert_eq!(largest, at);
             close(axis[largest], peak, 1e-10);
         }
@@ -163,8 +198,17 @@ fn published_half_sines() {
 fn exact_steady_start() {
     let level = vec![3.7; 200];
     let axes = [level.clone(), level.clone(), level];
-    for filter in [Filter::None, Filter::Butterworth { poles: 4, corner_hz: 5.0 }] {
+    for filter in [
+        Filter::None,
+        Filter::Butterworth {
+            poles: 4,
+            corner_hz: 5.0,
+        },
+    ] {
         let out = filtered(&axes, 500.0, filter);
-        out.axes_g.iter().flatten().for_each(|&v| close(v, 3.7, 1e-10));
+        out.axes_g
+            .iter()
+            .flatten()
+            .for_each(|&v| close(v, 3.7, 1e-10));
     }
 }

@@ -33,8 +33,13 @@ fn helix(t: f64) -> Vector3<f64> {
 /// the first three derivatives, over the inner half.
 fn helix_errors(n: usize) -> [f64; 4] {
     let width = 2.0 * TAU;
-    let parameters = (0..=n).map(|i| width * i as f64 / n as f64).collect::<Vec<_>>();
-    let values = parameters.iter().map(|&t| helix(t).into()).collect::<Vec<[f64; 3]>>();
+    let parameters = (0..=n)
+        .map(|i| width * i as f64 / n as f64)
+        .collect::<Vec<_>>();
+    let values = parameters
+        .iter()
+        .map(|&t| helix(t).into())
+        .collect::<Vec<[f64; 3]>>();
     let curve = Curve::interpolating(&parameters, &values);
     let mut worst = [0.0; 4];
     for i in 0..=4000 {
@@ -60,7 +65,12 @@ fn helix_errors(n: usize) -> [f64; 4] {
 #[test]
 fn converges_quintic_interpolation() {
     let (coarse, fine) = (helix_errors(64), helix_errors(128));
-    let scipy = [8.222479877365e-10, 2.441722680009e-8, 1.38043604216e-6, 8.789174120552e-5];
+    let scipy = [
+        8.222479877365e-10,
+        2.441722680009e-8,
+        1.38043604216e-6,
+        8.789174120552e-5,
+    ];
     for k in 0..4 {
         close(order(coarse[k], fine[k]), 6.0 - k as f64, 0.15);
         assert!(fine[k] < 2.0 * scipy[k], "derivative {k}: {:e}", fine[k]);
@@ -71,7 +81,9 @@ fn converges_quintic_interpolation() {
 /// included, whatever the spacing.
 #[test]
 fn exact_polynomials_of_degree_five() {
-    let parameters = (0..15).map(|i| 0.3 * f64::from(i) + 0.02 * f64::from(i * i)).collect::<Vec<_>>();
+    let parameters = (0..15)
+        .map(|i| 0.3 * f64::from(i) + 0.02 * f64::from(i * i))
+        .collect::<Vec<_>>();
     let p = |x: f64| 1.0 + x * (-2.0 + x * (0.5 + x * (0.25 + x * (-0.1 + x * 0.01))));
     let d3 = |x: f64| 1.5 - 2.4 * x + 0.6 * x * x;
     let values = parameters.iter().map(|&x| [p(x)]).collect::<Vec<_>>();
@@ -85,8 +97,13 @@ fn exact_polynomials_of_degree_five() {
 
 /// Largest errors of the periodic spline through n points of an ellipse, seam included.
 fn ellipse_errors(n: usize) -> [f64; 4] {
-    let parameters = (0..n).map(|i| TAU * i as f64 / n as f64).collect::<Vec<_>>();
-    let values = parameters.iter().map(|t| [30.0 * t.cos(), 12.0 * t.sin()]).collect::<Vec<_>>();
+    let parameters = (0..n)
+        .map(|i| TAU * i as f64 / n as f64)
+        .collect::<Vec<_>>();
+    let values = parameters
+        .iter()
+        .map(|t| [30.0 * t.cos(), 12.0 * t.sin()])
+        .collect::<Vec<_>>();
     let curve = Curve::periodic(&parameters, TAU, &values);
     let mut worst = [0.0; 4];
     for i in 0..4000 {
@@ -114,9 +131,14 @@ fn converges_periodic_interpolation() {
 #[test]
 fn exact_periodic_seam() {
     for n in [6usize, 7, 8, 9, 20] {
-        let parameters = (0..n).map(|i| i as f64 + 0.3 * (i as f64).sin()).collect::<Vec<_>>();
+        let parameters = (0..n)
+            .map(|i| i as f64 + 0.3 * (i as f64).sin())
+            .collect::<Vec<_>>();
         let period = n as f64 + 0.1;
-        let values = parameters.iter().map(|p| [(p * 1.7).cos() + 0.1 * p]).collect::<Vec<_>>();
+        let values = parameters
+            .iter()
+            .map(|p| [(p * 1.7).cos() + 0.1 * p])
+            .collect::<Vec<_>>();
         let curve = Curve::periodic(&parameters, period, &values);
         for (p, v) in parameters.iter().zip(&values) {
             close(curve.at(*p)[0][0], v[0], 1e-10);
@@ -145,7 +167,11 @@ fn exact_closed_circle() {
         close_vectors(point.up.value, Vector3::z(), 1e-12);
     }
     let length_m = spine.length_m();
-    for (s, wrapped) in [(-1.0, length_m - 1.0), (length_m + 2.0, 2.0), (length_m, 0.0)] {
+    for (s, wrapped) in [
+        (-1.0, length_m - 1.0),
+        (length_m + 2.0, 2.0),
+        (length_m, 0.0),
+    ] {
         close(spine.wrapped_m(s), wrapped, 1e-9);
         close_vectors(spine.at(s).position_m, spine.at(wrapped).position_m, 1e-9);
     }
@@ -161,7 +187,13 @@ fn exact_twisted_cubic() {
     let curve = |t: f64| Vector3::new(t, t * t, t * t * t) * 10.0;
     let points = curve_points((-0.2, 1.2), 141, curve);
     let up = vec![Vector3::new(-0.3, -0.2, 1.0); points.len()];
-    let spine = point_spine(Columns::Up { centre_m: points, up }, false);
+    let spine = point_spine(
+        Columns::Up {
+            centre_m: points,
+            up,
+        },
+        false,
+    );
     let speed = |t: f64| 10.0 * (1.0 + 4.0 * t * t + 9.0 * t.powi(4)).sqrt();
     close(0.1 * arc_m(0.0, 1.0, speed), 1.8630229825122514, 1e-12);
     close(spine.length_m(), arc_m(-0.2, 1.2, speed), 1e-8);
@@ -172,14 +204,26 @@ fn exact_twisted_cubic() {
             0.95200474003949935,
             0.78688524590163934,
             [0.62469504755442426, 0.62469504755442426, 0.4685212856658182],
-            [-0.67986404078640476, 0.13997200839720098, 0.71985604318560504],
+            [
+                -0.67986404078640476,
+                0.13997200839720098,
+                0.71985604318560504,
+            ],
         ),
         (
             1.0,
             0.16642353500306215,
             0.15789473684210526,
-            [0.26726124191242438, 0.53452248382484877, 0.80178372573727315],
-            [-0.67445327343346239, -0.49051147158797265, 0.55182540553646923],
+            [
+                0.26726124191242438,
+                0.53452248382484877,
+                0.80178372573727315,
+            ],
+            [
+                -0.67445327343346239,
+                -0.49051147158797265,
+                0.55182540553646923,
+            ],
         ),
     ];
     for (t, curvature, torsion, tangent, n) in expected {
@@ -220,7 +264,11 @@ fn exact_viviani() {
     let torsion = |s: f64| spine.at(s).torsion_1_m().unwrap();
     close(boole(0.0, spine.length_m(), 3000, torsion), 0.0, 1e-6);
     let curvature = |s: f64| spine.at(s).curvature_1_m();
-    close(boole(0.0, spine.length_m(), 3000, curvature), 11.062465391441208, 1e-6);
+    close(
+        boole(0.0, spine.length_m(), 3000, curvature),
+        11.062465391441208,
+        1e-6,
+    );
 }
 
 /// A06: a closed curve on a torus: length, curvature, torsion and their totals, by quadrature to 40
@@ -244,7 +292,11 @@ fn exact_torus_curve() {
         close(point.torsion_1_m().unwrap(), torsion, 1e-5);
     }
     let torsion = |s: f64| spine.at(s).torsion_1_m().unwrap();
-    close(boole(0.0, spine.length_m(), 3000, torsion), -15.216151112210381, 1e-5);
+    close(
+        boole(0.0, spine.length_m(), 3000, torsion),
+        -15.216151112210381,
+        1e-5,
+    );
     check_derivatives(&spine, [0.0, 0.001, 31.0, 157.65]);
 }
 
@@ -287,8 +339,14 @@ fn exact_arc_lengths() {
     close(catenary, 26.475530674255882, 1e-8);
     let wave = open_length_m((0.0, 50.0), 251, |x| plane(x, 3.0 * (TAU * x / 50.0).cos()));
     close(wave, 51.731791276358489, 1e-8);
-    let ellipse = lap_points(TAU, 800, |t| Vector3::new(30.0 * t.cos(), 12.0 * t.sin(), 0.0));
-    close(level_points(ellipse, true).length_m(), 138.07867557398906, 1e-7);
+    let ellipse = lap_points(TAU, 800, |t| {
+        Vector3::new(30.0 * t.cos(), 12.0 * t.sin(), 0.0)
+    });
+    close(
+        level_points(ellipse, true).length_m(),
+        138.07867557398906,
+        1e-7,
+    );
 }
 
 /// Stations are arc lengths: |r′| from neighbouring stations of a fitted curve is 1 to 1e-9, and
@@ -299,13 +357,29 @@ fn exact_arc_length_of_a_fit() {
     let centre_m = curve_points((0.0, 3.0), 400, curve);
     let bank = |t: f64| 0.9 * (t - 0.5).sin();
     let bank_left_rad = (0..400).map(|i| bank(3.0 * f64::from(i) / 399.0)).collect();
-    let banked = point_spine(Columns::Bank { centre_m: centre_m.clone(), bank_left_rad }, false);
+    let banked = point_spine(
+        Columns::Bank {
+            centre_m: centre_m.clone(),
+            bank_left_rad,
+        },
+        false,
+    );
     let point = |i: usize| banked.at(banked.length_m() * i as f64 / 399.0);
     let leaning = |r: &Vector3<f64>| Vector3::new(0.1, 0.4 * (0.2 * r.x).sin(), 1.0);
     let up = centre_m.iter().map(leaning).collect();
     let upped = point_spine(Columns::Up { centre_m, up }, false);
-    let rail = |side: f64| (0..400).map(|i| point(i).position_m + point(i).left().value * side).collect();
-    let railed = point_spine(Columns::Rails { left_m: rail(0.5), right_m: rail(-0.5) }, false);
+    let rail = |side: f64| {
+        (0..400)
+            .map(|i| point(i).position_m + point(i).left().value * side)
+            .collect()
+    };
+    let railed = point_spine(
+        Columns::Rails {
+            left_m: rail(0.5),
+            right_m: rail(-0.5),
+        },
+        false,
+    );
     for spine in [&banked, &upped, &railed] {
         check_derivatives(spine, [0.4, 22.0, 51.3, 90.0]);
         chords_are_arcs(spine);
@@ -330,7 +404,13 @@ fn exact_unwrapped_bank() {
     let centre_m = lap_points(TAU, 240, circle);
     let wrap = |bank: f64| bank - TAU * (bank / TAU).round();
     let bank_left_rad = (0..240).map(|i| wrap(TAU * f64::from(i) / 240.0)).collect();
-    let spine = point_spine(Columns::Bank { centre_m, bank_left_rad }, true);
+    let spine = point_spine(
+        Columns::Bank {
+            centre_m,
+            bank_left_rad,
+        },
+        true,
+    );
     for s in [0.0, 40.0, 78.5, 120.0, 157.0] {
         let bank = spine.at(s).bank_left_rad().unwrap();
         close(wrap(bank - s / 25.0), 0.0, 1e-8);

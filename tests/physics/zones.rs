@@ -87,7 +87,11 @@ fn exact_brake_by_shares() {
     // Entering: x = (v0/ω) sin ωt until x = 10 m; leaving mirrors it with the share falling.
     let entry_s = 5.0 / 12.0 + (10.0 * omega / 12.0).asin() / omega;
     close(time_at(&history, 30.0), entry_s, 1e-9);
-    close(state_when_at(&history, 30.0).speed_m_s, (144.0f64 - 0.32 * 100.0).sqrt(), 1e-9);
+    close(
+        state_when_at(&history, 30.0).speed_m_s,
+        (144.0f64 - 0.32 * 100.0).sqrt(),
+        1e-9,
+    );
     // Leaving: the rest y of the overlap falls from 10 m to 0 and y¨ = +ω² y.
     let leaving_s = (10.0 * omega / 112f64.sqrt()).atanh() / omega;
     close(time_at(&history, 40.0), entry_s + leaving_s, 1e-8);
@@ -101,7 +105,10 @@ fn exact_brake_by_shares() {
 fn exact_stop_in_a_clamp() {
     let (poses, train) = slope(60.0, 0.0, 5000.0);
     let scenario = zoned(2.0, 18.0, vec![zone("brake", 0.0, 60.0, clamp(25e3, 0.0))]);
-    for (goal, end) in [(Goal::TrackEnd, RunEnd::Stalled), (finish("brake"), RunEnd::Completed)] {
+    for (goal, end) in [
+        (Goal::TrackEnd, RunEnd::Stalled),
+        (finish("brake"), RunEnd::Completed),
+    ] {
         let history = run(&poses, &train, &scenario, &goal);
         assert_eq!(history.end, end);
         close(history.end_station_m, 34.4, 1e-9);
@@ -120,13 +127,20 @@ fn exact_clamp_on_a_slope() {
         (weight_n * (1.0 - 1e-9), RunEnd::TimeLimit),
     ] {
         let (poses, train) = slope(60.0, -10.0, 5000.0);
-        let scenario = zoned(10.0, 0.0, vec![zone("brake", 0.0, 60.0, clamp(force_n, 0.0))]);
+        let scenario = zoned(
+            10.0,
+            0.0,
+            vec![zone("brake", 0.0, 60.0, clamp(force_n, 0.0))],
+        );
         let history = run_for(&poses, &train, &scenario, 5.0);
         assert_eq!(history.end, end, "{force_n} N");
     }
     // Half in the brake it has half the grip.
     let (poses, train) = slope(60.0, -10.0, 5000.0);
-    for (factor, end) in [(2.0 + 1e-9, RunEnd::Stalled), (2.0 - 1e-9, RunEnd::Completed)] {
+    for (factor, end) in [
+        (2.0 + 1e-9, RunEnd::Stalled),
+        (2.0 - 1e-9, RunEnd::Completed),
+    ] {
         let zones = vec![zone("brake", 20.0, 60.0, clamp(factor * weight_n, 0.0))];
         let scenario = zoned(20.5, 0.0, zones);
         let history = run_for(&poses, &train, &scenario, 60.0);
@@ -168,7 +182,11 @@ fn exact_clamp_below_its_speed() {
     let scenario = zoned(10.0, 2.0, zones);
     let history = run(&poses, &train, &scenario, &Goal::TrackEnd);
     let pull = G * (10.0 * DEG).sin();
-    close(last(&history).speed_m_s, (4.0 + 2.0 * pull * 90.0).sqrt(), 1e-8);
+    close(
+        last(&history).speed_m_s,
+        (4.0 + 2.0 * pull * 90.0).sqrt(),
+        1e-8,
+    );
     close(history.energy.zones_j[0].1, 0.0, 0.0);
 }
 
@@ -177,7 +195,11 @@ fn exact_clamp_below_its_speed() {
 #[test]
 fn exact_launch_with_drag() {
     let (poses, train) = slope(100.0, 0.0, 6000.0);
-    let mut scenario = zoned(2.0, 0.0, vec![zone("launch", 0.0, 100.0, push(72e3, 100.0))]);
+    let mut scenario = zoned(
+        2.0,
+        0.0,
+        vec![zone("launch", 0.0, 100.0, push(72e3, 100.0))],
+    );
     scenario.air = Air::Density(1.2);
     scenario.resistance.drag_area_m2 = 3.0;
     scenario.resistance.running = 0.015;
@@ -197,7 +219,11 @@ fn exact_launch_with_drag() {
 #[test]
 fn exact_launch_to_its_cap() {
     let (poses, train) = slope(100.0, 0.0, 6000.0);
-    let free = zoned(2.0, 0.0, vec![zone("launch", 0.0, 100.0, push(72e3, 100.0))]);
+    let free = zoned(
+        2.0,
+        0.0,
+        vec![zone("launch", 0.0, 100.0, push(72e3, 100.0))],
+    );
     let goal = until(52.0);
     let history = run(&poses, &train, &free, &goal);
     close(last(&history).speed_m_s, 34.641016151377546, 1e-9);
@@ -205,7 +231,11 @@ fn exact_launch_to_its_cap() {
     let mut capped = zoned(2.0, 0.0, vec![zone("launch", 0.0, 100.0, push(72e3, 20.0))]);
     let history = run(&poses, &train, &capped, &goal);
     close(last(&history).speed_m_s, 20.0, 1e-12);
-    close(history.duration_s, 20.0 / 12.0 + (50.0 - 400.0 / 24.0) / 20.0, 1e-9);
+    close(
+        history.duration_s,
+        20.0 / 12.0 + (50.0 - 400.0 / 24.0) / 20.0,
+        1e-9,
+    );
     close(history.energy.zones_j[0].1, 0.5 * 6000.0 * 400.0, 1e-3);
     // With resistance the push gives, once at its cap, just what is lost.
     capped.resistance.running = 0.02;
@@ -213,7 +243,11 @@ fn exact_launch_to_its_cap() {
     close(last(&history).speed_m_s, 20.0, 1e-12);
     close(last(&history).acceleration_m_s2, 0.0, 1e-12);
     let losses_j = 0.02 * 6000.0 * G * 50.0;
-    close(history.energy.zones_j[0].1, 0.5 * 6000.0 * 400.0 + losses_j, 1e-2);
+    close(
+        history.energy.zones_j[0].1,
+        0.5 * 6000.0 * 400.0 + losses_j,
+        1e-2,
+    );
     close(history.energy.rolling_j, -losses_j, 1e-2);
 }
 
@@ -221,7 +255,11 @@ fn exact_launch_to_its_cap() {
 #[test]
 fn exact_push_entered_fast() {
     let (poses, train) = slope(400.0, 0.0, 6000.0);
-    let mut scenario = zoned(2.0, 20.0, vec![zone("launch", 0.0, 400.0, push(72e3, 18.0))]);
+    let mut scenario = zoned(
+        2.0,
+        20.0,
+        vec![zone("launch", 0.0, 400.0, push(72e3, 18.0))],
+    );
     scenario.resistance.running = 0.05;
     let goal = until(300.0);
     let history = run(&poses, &train, &scenario, &goal);
@@ -248,7 +286,11 @@ fn exact_lift() {
     close(last(&history).speed_m_s, 2.5, 0.0);
     close(history.energy.zones_j[0].1 / 20.0, 86180.406307033287, 1e-4);
     let felt = felt_g(&poses, 0, &seat(0.2, 0.3, 0.9), last(&history));
-    close_vectors(felt, Vector3::new(0.5735764363510461, 0.0, 0.81915204428899179), 1e-12);
+    close_vectors(
+        felt,
+        Vector3::new(0.5735764363510461, 0.0, 0.81915204428899179),
+        1e-12,
+    );
 }
 
 /// A hold drives to its speed from below and brakes to it from above, at ±F/m, and holds a train
@@ -261,10 +303,22 @@ fn exact_hold_from_both_sides() {
         let goal = until(150.0);
         let history = run(&poses, &train, &scenario, &goal);
         let reached_s = (v0 - 5.0f64).abs() / 2.0;
-        close(history.state_at(0.5 * reached_s).unwrap().acceleration_m_s2, 2.0 * sign, 1e-10);
+        close(
+            history.state_at(0.5 * reached_s).unwrap().acceleration_m_s2,
+            2.0 * sign,
+            1e-10,
+        );
         let reached_m = 0.5 * (v0 + 5.0) * reached_s;
-        close(history.duration_s, reached_s + (148.0 - reached_m) / 5.0, 1e-9);
-        close(history.energy.zones_j[0].1, 0.5 * 5000.0 * (25.0 - v0 * v0), 1e-3);
+        close(
+            history.duration_s,
+            reached_s + (148.0 - reached_m) / 5.0,
+            1e-9,
+        );
+        close(
+            history.energy.zones_j[0].1,
+            0.5 * 5000.0 * (25.0 - v0 * v0),
+            1e-3,
+        );
     }
     let (poses, train) = slope(200.0, -5.0, 5000.0);
     let scenario = zoned(2.0, 5.0, vec![zone("tyres", 0.0, 200.0, hold(5.0, 10e3))]);
@@ -344,8 +398,16 @@ fn exact_work_against_wind_round_a_circle() {
     close(history.duration_s, 3.0 * lap_m / 15.0, 1e-7);
     close(last(&history).speed_m_s, 15.0, 0.0);
     // The catalogue integrates 3e-4 (v − w cos)² over the lap of 2πR: 13.430308594096366.
-    close(history.energy.air_j, -3.0 * 2000.0 * 13.430308594096366, 1e-2);
-    close(history.energy.zones_j[0].1, 3.0 * 2000.0 * 13.430308594096366, 1e-2);
+    close(
+        history.energy.air_j,
+        -3.0 * 2000.0 * 13.430308594096366,
+        1e-2,
+    );
+    close(
+        history.energy.zones_j[0].1,
+        3.0 * 2000.0 * 13.430308594096366,
+        1e-2,
+    );
 }
 
 /// Zones side by side act together: two brakes of 10 kN are one of 20 kN; an edge between two
@@ -409,7 +471,9 @@ fn exact_wind_by_compass() {
             },
             ..base
         };
-        run_for(&poses, &train, &scenario, 1e-3).state_at(0.0).map(|s| s.acceleration_m_s2)
+        run_for(&poses, &train, &scenario, 1e-3)
+            .state_at(0.0)
+            .map(|s| s.acceleration_m_s2)
     };
     // ½ ρ C_dA v²/m = 0.1 m/s².
     close(accel(270.0).unwrap(), 0.1, 1e-12);
