@@ -5,6 +5,7 @@ use crate::input::lower::Lower;
 use crate::input::written::operation::{AirKeys, ResistanceKeys, WindKeys};
 use crate::input::{Air, Resistance, Wind};
 
+/// A resistance with its name, which is kept where the rest cannot be read.
 pub(super) fn named_resistance(
     (name, keys): (Field<Text>, Field<ResistanceKeys>),
     lower: &mut Lower,
@@ -41,6 +42,7 @@ pub(super) fn plain_air(written: Located<AirKeys>, lower: &mut Lower) -> Option<
     air(written, lower)
 }
 
+/// The air of any entry.
 pub(super) fn air(written: Located<AirKeys>, lower: &mut Lower) -> Option<Air> {
     let (at, keys) = (written.at, written.value);
     let temperature_k = keys.temperature.map(|field| {
@@ -92,6 +94,7 @@ pub(super) fn plain_wind(written: Located<WindKeys>, lower: &mut Lower) -> Optio
     wind(written, lower)
 }
 
+/// The wind of any entry, which must be complete.
 pub(super) fn wind(written: Located<WindKeys>, lower: &mut Lower) -> Option<Wind> {
     let (at, keys) = (written.at, written.value);
     let speed = lower.require(keys.speed.unwrap_or(Field::Missing), &at, "speed");
@@ -103,6 +106,7 @@ pub(super) fn wind(written: Located<WindKeys>, lower: &mut Lower) -> Option<Wind
     })
 }
 
+/// Only the values of a grid have names.
 pub(super) fn refuse_name(name: Option<&Field<Text>>, lower: &mut Lower) {
     if let Some(Field::Given(name)) = name {
         lower.error(

@@ -15,6 +15,7 @@ pub(super) struct Point {
     pub(super) level: Located<f64>,
 }
 
+/// Limits: magnitudes above 0 that do not rise.
 pub(super) fn limits_of(
     limits: Field<Curve>,
     sign: Option<Field<SignWord>>,
@@ -50,6 +51,7 @@ pub(super) fn limits_of(
     Some((Demand::Limit(sign), curve))
 }
 
+/// Floors: least loads below 1 that do not fall.
 pub(super) fn floor_of(
     floor: Field<Curve>,
     sign: Option<Field<SignWord>>,
@@ -78,6 +80,7 @@ pub(super) fn floor_of(
     Some((Demand::Floor, curve))
 }
 
+/// A floor is for the headward axis with gravity in it.
 pub(super) fn check_floor_axis(
     axis: Option<&Located<AxisWord>>,
     gravity: Option<GravityTerm>,
@@ -147,6 +150,7 @@ fn check_order(
     }
 }
 
+/// How a curve runs; one point needs no word for it.
 pub(super) fn lowered_between(
     field: Option<Field<BetweenWord>>,
     curve: &[Point],

@@ -5,7 +5,7 @@ use crate::input::field::{At, Field, Located, Text, WordOr};
 use crate::input::lower::air::{air, wind};
 use crate::input::lower::scenario::{CASES, Common, lowered_riders};
 use crate::input::lower::{Lower, Names};
-use crate::input::written::operation::{AirKeys, GridKeys, WindKeys, WrittenRiders};
+use crate::input::written::operation::{AirKeys, GridKeys, RidersWord, WindKeys, WrittenRiders};
 use crate::input::{Air, Release, Resistance, Riders, Scenario, Wind, Zone};
 
 /// One value of a grid's list.
@@ -106,11 +106,22 @@ fn choices<T>(
 
 fn riders_choice(written: Located<WrittenRiders>, lower: &mut Lower) -> Option<(String, Choice)> {
     let name = match &written.value {
-        WordOr::Word(_) => Some(lower.text(&written.at).to_owned()),
+        WordOr::Word(word) => Some(word_name(*word).to_owned()),
         WordOr::Keys(keys) => value_name(keys.name.clone(), &written.at, lower),
     };
     let riders = lowered_riders(written.value, &written.at, lower);
     Some((name?, Choice::Riders(riders?)))
+}
+
+fn word_name(word: RidersWord) -> &'static str {
+    match word {
+        RidersWord::All => "all",
+        RidersWord::None => "none",
+        RidersWord::FrontHalf => "front-half",
+        RidersWord::RearHalf => "rear-half",
+        RidersWord::Left => "left",
+        RidersWord::Right => "right",
+    }
 }
 
 fn air_choice(written: Located<AirKeys>, lower: &mut Lower) -> Option<(String, Choice)> {

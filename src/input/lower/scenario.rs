@@ -225,6 +225,7 @@ fn scenario(
     })
 }
 
+/// Who is aboard, in a word or seat by seat.
 pub(super) fn lowered_riders(written: WrittenRiders, at: &At, lower: &mut Lower) -> Option<Riders> {
     let keys = match written {
         WordOr::Word(word) => return Some(riders_of(word)),
