@@ -4,12 +4,14 @@
 //! program runs (the public types here). Only this stage opens files. It knows
 //! nothing of geometry or physics.
 
+mod access;
 mod decode;
 mod dimension;
 mod document;
 mod envelope;
 mod field;
 mod files;
+mod keys;
 mod lower;
 mod operation;
 mod point_file;

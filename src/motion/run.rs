@@ -335,7 +335,8 @@ impl<'a> Runner<'a> {
         };
         let before = std::mem::take(&mut self.law.windows);
         let mut fresh = Vec::new();
-        for mut window in here.into_iter().filter(|w| w.share(middle_m) > 0.0) {
+        for window in here.into_iter().filter(|w| w.part_inside(middle_m) > 0.0) {
+            let mut window = window.on_stretch(middle_m);
             match before
                 .iter()
                 .find(|b| (b.zone, b.lap) == (window.zone, window.lap))

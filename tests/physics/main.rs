@@ -1,5 +1,25 @@
 //! Physics against answers from outside: closed forms, published values, reference libraries.
-#![allow(missing_docs, unreachable_pub, clippy::unwrap_used)]
+//!
+//! Each test names its source beside the number. `exact_` means a closed form, `published_` a
+//! number printed elsewhere, `converges_` an order of convergence.
+#![allow(
+    missing_docs,
+    unreachable_pub,
+    clippy::unwrap_used,
+    clippy::excessive_precision
+)]
 
+mod air;
+mod bodies;
+mod convergence;
 mod fixture;
+mod geometry;
+mod hilly;
+mod invariance;
+mod ledger;
+mod loads;
 mod motion;
+mod runs;
+mod signals;
+mod splines;
+mod zones;
