@@ -81,52 +81,62 @@ pub(super) struct IllConditioned;
 impl<const N: usize> Data<'_, N> {
     /// The smoothest curve whose residuals match `error`, the standard deviation per coordinate of
     /// a point of weight 1.
+    ///
+    /// Residuals match anywhere on a plateau, and nowhere where chance made them a little larger
+    /// than stated; so the curve is never rougher than the one of least expected error for that
+    /// `error` (the unbiased risk of Craven & Wahba 1979, Mallows' C_L).
     pub(super) fn within(&self, error: f64) -> Result<Smooth<N>, IllConditioned> {
         let trials = Trials::new(self);
+        let risk = |ln: f64| trials.at(ln).map(|trial| trial.risk(error));
+        let least_risk = least(risk)?;
         let excess = |ln: f64| match trials.at(ln) {
             Some(trial) => trial.squares - error * error * trial.freedom,
             // Equations too stiff to solve stand for a curve too smooth.
-            None if ln > 0.0 => f64::INFINITY,
-            None => f64::NEG_INFINITY,
+            None => f64::MAX,
         };
-        let ln = if excess(HIGHEST) <= 0.0 {
+        let ln = if excess(least_risk) >= 0.0 {
+            least_risk
+        } else if excess(HIGHEST) <= 0.0 {
             HIGHEST
         } else {
-            bracketed(LOWEST, HIGHEST, LAMBDA_TOLERANCE, |ln| {
-                excess(ln).clamp(-1e300, 1e300)
-            })
+            bracketed(least_risk, HIGHEST, LAMBDA_TOLERANCE, excess)
         };
         trials.smooth(ln, Some(error))
     }
 
     /// The curve of the least generalized cross-validation score, which finds the error itself.
     pub(super) fn cross_validated(&self) -> Result<Smooth<N>, IllConditioned> {
-        const COARSE: f64 = 1.0;
         let trials = Trials::new(self);
-        let score = |ln: f64| trials.at(ln).and_then(|trial| trial.score());
-        let steps = ((HIGHEST - LOWEST) / COARSE) as usize;
-        let coarse = (0..=steps).map(|i| HIGHEST - i as f64 * COARSE);
-        // From the smoothest on, until too little residual is left.
-        let scored = coarse
-            .map(|ln| (ln, score(ln)))
-            .skip_while(|(_, s)| s.is_none());
-        let scored = scored.map_while(|(ln, s)| s.map(|s| (ln, s)));
-        let best = scored
-            .min_by(|a, b| a.1.total_cmp(&b.1))
-            .ok_or(IllConditioned)?
-            .0;
-        let (mut low, mut high) = (best - COARSE, best + COARSE);
-        while high - low > LAMBDA_TOLERANCE {
-            let (a, b) = (low + (high - low) / 3.0, high - (high - low) / 3.0);
-            let value = |ln: f64| score(ln).unwrap_or(f64::INFINITY);
-            if value(a) < value(b) {
-                high = b
-            } else {
-                low = a
-            }
-        }
-        trials.smooth(high, None)
+        let ln = least(|ln| trials.at(ln).and_then(|trial| trial.score()))?;
+        trials.smooth(ln, None)
     }
+}
+
+/// ln λ of the least score: a search in equal steps from the smoothest curve on until there is no
+/// score any more, then thirds.
+fn least(score: impl Fn(f64) -> Option<f64>) -> Result<f64, IllConditioned> {
+    const STEP: f64 = 1.0;
+    let steps = ((HIGHEST - LOWEST) / STEP) as usize;
+    let tried = (0..=steps)
+        .map(|i| HIGHEST - i as f64 * STEP)
+        .map(|ln| (ln, score(ln)));
+    let tried = tried.skip_while(|(_, s)| s.is_none());
+    let tried = tried.map_while(|(ln, s)| s.map(|s| (ln, s)));
+    let best = tried
+        .min_by(|a, b| a.1.total_cmp(&b.1))
+        .ok_or(IllConditioned)?
+        .0;
+    let (mut low, mut high) = (best - STEP, best + STEP);
+    while high - low > LAMBDA_TOLERANCE {
+        let (a, b) = (low + (high - low) / 3.0, high - (high - low) / 3.0);
+        let value = |ln: f64| score(ln).unwrap_or(f64::INFINITY);
+        if value(a) < value(b) {
+            high = b
+        } else {
+            low = a
+        }
+    }
+    Ok(low)
 }
 
 /// One set of equations, tried with several λ.
@@ -286,6 +296,11 @@ impl<'a, const N: usize> Trials<'a, N> {
 }
 
 impl<const N: usize> Trial<N> {
+    /// Unbiased estimate of the squared error at the points for a known error, up to a constant.
+    fn risk(&self, error: f64) -> f64 {
+        self.squares - 2.0 * error * error * self.freedom
+    }
+
     /// Generalized cross-validation score; none where too little residual is left to judge by.
     fn score(&self) -> Option<f64> {
         let part = self.freedom / self.count as f64;
