@@ -15,6 +15,7 @@ mod keys;
 mod lower;
 mod operation;
 mod point_file;
+mod point_header;
 mod points;
 mod quantity;
 mod read;
