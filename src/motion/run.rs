@@ -30,7 +30,7 @@ pub struct Settings {
 impl Default for Settings {
     fn default() -> Self {
         Self {
-            tolerance: 1e-9,
+            tolerance: 1e-10,
             longest_step_s: 0.05,
         }
     }
