@@ -11,6 +11,7 @@
 
 mod air;
 mod bodies;
+mod composite;
 mod convergence;
 mod fixture;
 mod geometry;

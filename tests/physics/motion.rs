@@ -457,6 +457,33 @@ fn exact_side_friction_on_a_flat_circle() {
     close(last(&history).speed_m_s, w.sqrt(), 1e-7);
 }
 
+/// B13, helix a = 12 m, b = −0.6 m, with this program's law: unbanked, the speed at which
+/// g sin = c_run g cos + c_side v² a/(a² + b²) is kept (derived here).
+#[test]
+fn exact_steady_speed_down_a_helix() {
+    let (a, b, run_c, side_c) = (12.0f64, -0.6f64, 0.01, 0.02);
+    let start = crestfall::input::Start {
+        grade_rad: (b / a).atan(),
+        ..Default::default()
+    };
+    let turn = crestfall::input::Element {
+        turn_left_rad: 3.0 * TAU,
+        ease: crestfall::input::Ease::Ramp(0.05),
+        ..element(3.0 * TAU * a.hypot(b) / 0.95)
+    };
+    let train = point_train(0.01, 1000.0);
+    let poses = Poses::new(&element_spine(start, vec![turn]), &train).unwrap();
+    let (sin, cos) = (b / a).atan().sin_cos();
+    let v = ((-sin - run_c * cos) * G / side_c * (a * a + b * b) / a).sqrt();
+    let mut scenario = running(15.0, v, run_c);
+    scenario.resistance.side = side_c;
+    let goal = until(200.0);
+    let history = run(&poses, &train, &scenario, &goal);
+    close(last(&history).speed_m_s, v, 1e-6);
+    close(last(&history).acceleration_m_s2, 0.0, 1e-6);
+    assert!(v > 10.0);
+}
+
 /// B11 (Meriam & Kraige, *Statics*, sec. 5/3): seven cars, 2.5 m of arc apart, over a crest of
 /// R = 20 m, no friction. On a circle equal chords are equal arcs, so the chained train coincides.
 #[test]
