@@ -78,8 +78,9 @@ impl BandedFactors {
 
 /// values[row] −= factor values[other].
 fn subtract<const N: usize>(values: &mut [[f64; N]], row: usize, other: usize, factor: f64) {
-    for i in 0..N {
-        values[row][i] -= factor * values[other][i];
+    let from = values[other];
+    for (value, taken) in values[row].iter_mut().zip(from) {
+        *value -= factor * taken;
     }
 }
 
