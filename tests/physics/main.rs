@@ -11,16 +11,23 @@
 
 mod air;
 mod bodies;
+mod brakes;
+mod circles;
 mod composite;
 mod convergence;
+mod crest;
+mod drives;
 mod fixture;
 mod geometry;
 mod hilly;
 mod invariance;
 mod ledger;
-mod loads;
-mod motion;
+mod loops;
 mod runs;
+mod seats;
 mod signals;
+mod slopes;
 mod splines;
+mod turns;
+mod valley;
 mod zones;
