@@ -59,8 +59,8 @@ struct Ends {
 const LOWEST: f64 = -25.0;
 const HIGHEST: f64 = 28.0;
 
-/// λ is found to this part: far finer than its effect on the curve.
-const LAMBDA_TOLERANCE: f64 = 1e-3;
+/// λ is found to this part: curves depend on its sixth root.
+const LAMBDA_TOLERANCE: f64 = 1e-2;
 
 /// Cross-validation looks no further where less than this part of the data is left as residual:
 /// beyond, the score of correlated errors falls without end.
@@ -115,7 +115,7 @@ impl<const N: usize> Data<'_, N> {
 /// ln λ of the least score: a search in equal steps from the smoothest curve on until there is no
 /// score any more, then thirds.
 fn least(score: impl Fn(f64) -> Option<f64>) -> Result<f64, IllConditioned> {
-    const STEP: f64 = 1.0;
+    const STEP: f64 = 2.0;
     let steps = ((HIGHEST - LOWEST) / STEP) as usize;
     let tried = (0..=steps)
         .map(|i| HIGHEST - i as f64 * STEP)
