@@ -51,7 +51,7 @@ struct Ends {
     /// The smoothed (x − middle)³/6.
     cubic: Curve<1>,
     middle: f64,
-    /// Size of the third derivative near the first and the last point.
+    /// Root mean square of the third derivative near the first and the last point.
     third: [f64; 2],
 }
 
@@ -281,12 +281,13 @@ impl<'a, const N: usize> Trials<'a, N> {
         let spacing = (last - first) / (self.parameters.len() - 1) as f64;
         let kernel = (lambda * spacing).powf(1.0 / 6.0);
         // Beyond the reach of the ends, over a few widths of the kernel.
-        let largest = |from: f64, side: f64| {
-            let inside = (0..=20).map(|i| from + side * kernel * (2.0 + 0.25 * f64::from(i)));
-            let third = |x: f64| SVector::from(curve.at(x.clamp(first, last))[3]).norm();
-            inside.map(third).fold(0.0, f64::max)
+        let size = |from: f64, side: f64| {
+            const STEPS: i32 = 20;
+            let inside = (0..=STEPS).map(|i| from + side * kernel * (2.0 + 0.25 * f64::from(i)));
+            let third = |x: f64| SVector::from(curve.at(x.clamp(first, last))[3]).norm_squared();
+            (inside.map(third).sum::<f64>() / f64::from(STEPS + 1)).sqrt()
         };
-        let third = [largest(first, 1.0), largest(last, -1.0)];
+        let third = [size(first, 1.0), size(last, -1.0)];
         Ok(Ends {
             cubic,
             middle,
