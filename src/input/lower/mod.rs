@@ -1,8 +1,10 @@
 //! From what was written to what is run: meanings checked while places are known.
 
 pub(super) mod envelope;
+mod holds;
 pub(super) mod operation;
 mod scenario;
+mod speed;
 pub(super) mod track;
 pub(super) mod train;
 mod zone;
