@@ -8,6 +8,8 @@ mod definition;
 mod fixture;
 mod outcomes;
 mod random;
+mod scopes;
+mod speeds;
 
 use crestfall::envelope::{Judgement, Outcome, RunState};
 use proptest::prelude::*;
