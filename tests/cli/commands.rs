@@ -3,6 +3,7 @@
 mod check;
 mod export;
 mod fixture;
+mod rules;
 mod wrong_input;
 
 use std::fs;
