@@ -8,14 +8,11 @@ use std::cell::RefCell;
 use std::fmt;
 use std::sync::Arc;
 
-use serde::de::value::StrDeserializer;
-use serde::de::{
-    Deserialize, DeserializeSeed, Deserializer, EnumAccess, Expected, IntoDeserializer, MapAccess,
-    SeqAccess, VariantAccess, Visitor,
-};
+use serde::de::{Deserialize, Deserializer, Expected, Visitor};
 use serde::forward_to_deserialize_any;
 
 use crate::diagnostic::{Diagnostic, Place, Source};
+use crate::input::access::{Items, Keys, Parts, Word};
 use crate::input::document::{Kind, Meaning, Node, join};
 use crate::input::field::{FIELD, Field, WORD_OR_KEYS};
 
@@ -41,7 +38,7 @@ pub(super) fn decode<T: for<'de> Deserialize<'de>>(
 
 /// Why a value could not be decoded: a message, then a hint a line.
 #[derive(Debug)]
-pub(super) struct Mismatch(String);
+pub(super) struct Mismatch(pub(super) String);
 
 impl fmt::Display for Mismatch {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
@@ -95,19 +92,24 @@ impl Sink<'_> {
 
 /// One node with its key path.
 #[derive(Clone)]
-struct Decoder<'a> {
-    node: &'a Node,
-    path: String,
+pub(super) struct Decoder<'a> {
+    pub(super) node: &'a Node,
+    pub(super) path: String,
     sink: &'a Sink<'a>,
 }
 
 impl<'a> Decoder<'a> {
-    fn child(&self, node: &'a Node, path: String) -> Self {
+    pub(super) fn child(&self, node: &'a Node, path: String) -> Self {
         Self {
             node,
             path,
             sink: self.sink,
         }
+    }
+
+    /// Records what is wrong with this node.
+    pub(super) fn record(&self, mismatch: &Mismatch) {
+        self.sink.record(self.node, &self.path, &mismatch.0);
     }
 
     fn mismatch<T>(&self, expected: &dyn Expected) -> Result<T, Mismatch> {
@@ -316,132 +318,5 @@ impl<'de> Deserializer<'de> for Decoder<'_> {
 
     forward_to_deserialize_any! {
         i8 i16 i32 i64 u8 u16 u32 f32 char bytes byte_buf unit unit_struct tuple_struct
-    }
-}
-
-/// The parts of a field: first byte, byte after the last, key path, value.
-struct Parts<'a> {
-    of: Decoder<'a>,
-    next: usize,
-}
-
-impl<'de> SeqAccess<'de> for Parts<'_> {
-    type Error = Mismatch;
-
-    fn next_element_seed<S: DeserializeSeed<'de>>(
-        &mut self,
-        seed: S,
-    ) -> Result<Option<S::Value>, Mismatch> {
-        self.next += 1;
-        let span = &self.of.node.span;
-        let value = match self.next {
-            1 => seed.deserialize(span.start.into_deserializer()),
-            2 => seed.deserialize(span.end.into_deserializer()),
-            3 => seed.deserialize(self.of.path.as_str().into_deserializer()),
-            _ => seed.deserialize(self.of.clone()).inspect_err(|mismatch| {
-                let text = &mismatch.0;
-                self.of.sink.record(self.of.node, &self.of.path, text);
-            }),
-        };
-        value.map(Some)
-    }
-}
-
-/// The items of a list.
-struct Items<'a> {
-    of: Decoder<'a>,
-    items: &'a [Node],
-    next: usize,
-}
-
-impl<'de> SeqAccess<'de> for Items<'_> {
-    type Error = Mismatch;
-
-    fn next_element_seed<S: DeserializeSeed<'de>>(
-        &mut self,
-        seed: S,
-    ) -> Result<Option<S::Value>, Mismatch> {
-        let Some(item) = self.items.get(self.next) else {
-            return Ok(None);
-        };
-        let path = format!("{}[{}]", self.of.path, self.next);
-        self.next += 1;
-        seed.deserialize(self.of.child(item, path)).map(Some)
-    }
-}
-
-/// The entries of a map.
-struct Keys<'a> {
-    of: Decoder<'a>,
-    entries: std::vec::IntoIter<(&'a Node, &'a Node)>,
-    value: Option<Decoder<'a>>,
-}
-
-impl<'a> Keys<'a> {
-    fn new(of: Decoder<'a>, entries: Vec<(&'a Node, &'a Node)>) -> Self {
-        Self {
-            of,
-            entries: entries.into_iter(),
-            value: None,
-        }
-    }
-}
-
-impl<'de> MapAccess<'de> for Keys<'_> {
-    type Error = Mismatch;
-
-    fn next_key_seed<S: DeserializeSeed<'de>>(
-        &mut self,
-        seed: S,
-    ) -> Result<Option<S::Value>, Mismatch> {
-        let Some((key, value)) = self.entries.next() else {
-            return Ok(None);
-        };
-        let path = join(&self.of.path, key.text());
-        self.value = Some(self.of.child(value, path.clone()));
-        seed.deserialize(self.of.child(key, path)).map(Some)
-    }
-
-    fn next_value_seed<S: DeserializeSeed<'de>>(&mut self, seed: S) -> Result<S::Value, Mismatch> {
-        let value = self.value.take();
-        let value = value.ok_or_else(|| Mismatch("a value without a key".to_owned()))?;
-        seed.deserialize(value)
-    }
-}
-
-/// One word of a closed set.
-struct Word<'a>(&'a str);
-
-impl<'de> EnumAccess<'de> for Word<'_> {
-    type Error = Mismatch;
-    type Variant = Self;
-
-    fn variant_seed<S: DeserializeSeed<'de>>(self, seed: S) -> Result<(S::Value, Self), Mismatch> {
-        let word: StrDeserializer<'_, Mismatch> = self.0.into_deserializer();
-        Ok((seed.deserialize(word)?, self))
-    }
-}
-
-impl<'de> VariantAccess<'de> for Word<'_> {
-    type Error = Mismatch;
-
-    fn unit_variant(self) -> Result<(), Mismatch> {
-        Ok(())
-    }
-
-    fn newtype_variant_seed<S: DeserializeSeed<'de>>(self, _: S) -> Result<S::Value, Mismatch> {
-        Err(Mismatch(format!("`{}` is a word on its own", self.0)))
-    }
-
-    fn tuple_variant<V: Visitor<'de>>(self, _: usize, _: V) -> Result<V::Value, Mismatch> {
-        Err(Mismatch(format!("`{}` is a word on its own", self.0)))
-    }
-
-    fn struct_variant<V: Visitor<'de>>(
-        self,
-        _: &'static [&'static str],
-        _: V,
-    ) -> Result<V::Value, Mismatch> {
-        Err(Mismatch(format!("`{}` is a word on its own", self.0)))
     }
 }

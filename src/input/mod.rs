@@ -4,6 +4,7 @@
 //! program runs (the public types here). Only this stage opens files. It knows
 //! nothing of geometry or physics.
 
+mod access;
 mod decode;
 mod dimension;
 mod document;
@@ -11,9 +12,11 @@ mod envelope;
 mod field;
 mod files;
 mod holds;
+mod keys;
 mod lower;
 mod operation;
 mod point_file;
+mod point_header;
 mod points;
 mod quantity;
 mod read;

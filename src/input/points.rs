@@ -25,6 +25,18 @@ pub struct PointTable {
 }
 
 impl PointTable {
+    /// A table that was read from no file: every row's place is `place`.
+    pub fn new(columns: Columns, closed: bool, fit: Fit, place: Place) -> Self {
+        Self {
+            closed,
+            fit,
+            source: Arc::clone(&place.source),
+            rows: vec![place.span.clone(); columns.len()],
+            columns,
+            place,
+        }
+    }
+
     /// Number of points.
     pub fn len(&self) -> usize {
         self.rows.len()
@@ -68,6 +80,16 @@ pub enum Columns {
         /// Right rail, m.
         right_m: Vec<Vector3<f64>>,
     },
+}
+
+impl Columns {
+    /// Number of points.
+    fn len(&self) -> usize {
+        match self {
+            Self::Bank { centre_m, .. } | Self::Up { centre_m, .. } => centre_m.len(),
+            Self::Rails { left_m, .. } => left_m.len(),
+        }
+    }
 }
 
 /// How a curve is laid through points.

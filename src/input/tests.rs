@@ -436,3 +436,57 @@ fn schemas_refuse_unknown_keys_and_know_what_is_required() {
         );
     }
 }
+
+#[test]
+fn files_are_named_from_the_study_and_never_absolutely() {
+    let folder = Folder::new();
+    fs::create_dir(folder.path("deep")).expect("a folder for the study");
+    let absolute = folder.path("family.envelope.yaml");
+    let study = STUDY
+        .replace("as-drawn.track", "../as-drawn.track")
+        .replace("tracks/eased", ".././tracks/eased")
+        .replace("six-car", "../six-car")
+        .replace("season", "../tracks/../season")
+        .replace("family.envelope.yaml", &absolute.display().to_string());
+    folder.write("deep/saltglass.study.yaml", &study);
+    let study = read_study(&folder.path("deep/saltglass.study.yaml"));
+    let study = study.unwrap_or_else(|found| panic!("{}", drawn(&found)));
+    let names: Vec<&str> = study.files.iter().map(|file| file.name.as_str()).collect();
+    let expected = [
+        "saltglass.study.yaml",
+        "../as-drawn.track.yaml",
+        "../six-car.train.yaml",
+        "../tracks/eased.track.yaml",
+        "../tracks/survey.csv",
+        "../season.operation.yaml",
+        "../family.envelope.yaml",
+    ];
+    assert_eq!(names, expected);
+}
+
+#[test]
+fn names_keep_their_own_text() {
+    let folder = Folder::new();
+    let train = TRAIN.replace("Six cars, two abreast, two rows", "1.10");
+    folder.write(
+        "six-car.train.yaml",
+        &train.replace("name: front-right", "name: no"),
+    );
+    let train = folder.good_study().variants[0].train.clone();
+    assert_eq!(train.name, "1.10");
+    assert_eq!(train.cars[0].seats[1].name, "no");
+}
+
+#[test]
+fn a_byte_order_mark_and_windows_line_ends_change_nothing() {
+    let folder = Folder::new();
+    let train = format!("\u{feff}{}", TRAIN.replace('\n', "\r\n"));
+    folder.write("six-car.train.yaml", &train);
+    folder.write(
+        "tracks/survey.csv",
+        &format!("\u{feff}{}", SURVEY.replace('\n', "\r\n")),
+    );
+    let study = folder.good_study();
+    assert_eq!(study.variants[0].train.cars.len(), 6);
+    assert_eq!(study.variants[0].train.cars[0].place.line_column(), (4, 5));
+}

@@ -148,11 +148,14 @@ impl Terms {
         self.rolling_n + law.windows.iter().map(|w| w.grip_n(q)).sum::<f64>()
     }
 
-    /// q̈, m/s².
+    /// q̈, m/s²; 0 while a zone keeps the speed. That its force suffices is for the run to see
+    /// ([`Self::beyond_keeping_n`]): a force cut off here would bend the step in which it gives out.
     pub(super) fn acceleration_m_s2(&self, q: f64, v: f64, law: &Law) -> f64 {
-        let needed_n = self.needed_n(v, law, q);
-        let kept_n = law.kept_n(q, needed_n);
-        (kept_n - needed_n) / self.mass_kg
+        if law.keeps_speed() {
+            0.0
+        } else {
+            -self.needed_n(v, law, q) / self.mass_kg
+        }
     }
 
     /// How far the force needed to keep a speed lies beyond what the zones that keep it can give,

@@ -16,6 +16,16 @@ pub(super) struct Window {
     train_m: f64,
     pub(super) device: Device,
     pub(super) mode: Mode,
+    line: ShareLine,
+}
+
+/// The share as a straight line in q, which it is between two edges. It is carried on beyond them,
+/// so that an integration step across an edge sees no corner before the edge has been located.
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
+struct ShareLine {
+    through_m: f64,
+    share: f64,
+    slope_1_m: f64,
 }
 
 /// What a device is doing.
@@ -31,13 +41,36 @@ pub(super) enum Mode {
 
 impl Window {
     /// Part of the train inside: clip(min(q, b) − max(q − T, a), 0)/T.
-    pub(super) fn share(&self, q: f64) -> f64 {
+    pub(super) fn part_inside(&self, q: f64) -> f64 {
         if self.train_m > 0.0 {
             let inside_m = q.min(self.to_m) - (q - self.train_m).max(self.from_m);
             inside_m.max(0.0) / self.train_m
         } else {
             f64::from(self.from_m <= q && q <= self.to_m)
         }
+    }
+
+    /// The same for a stretch between two edges, of which `middle_m` is the middle.
+    pub(super) fn on_stretch(self, middle_m: f64) -> Self {
+        let rises = middle_m < self.to_m && self.train_m > 0.0;
+        let falls = middle_m - self.train_m > self.from_m && self.train_m > 0.0;
+        let share = self.part_inside(middle_m);
+        let slope_1_m = if share > 0.0 && rises != falls {
+            (f64::from(rises) - f64::from(falls)) / self.train_m
+        } else {
+            0.0
+        };
+        let line = ShareLine {
+            through_m: middle_m,
+            share,
+            slope_1_m,
+        };
+        Self { line, ..self }
+    }
+
+    /// Part of the train inside, by the line of the present stretch.
+    pub(super) fn share(&self, q: f64) -> f64 {
+        self.line.share + self.line.slope_1_m * (q - self.line.through_m)
     }
 
     /// Where the share's slope changes, m.
@@ -52,7 +85,7 @@ impl Window {
     }
 
     /// Last station, m.
-    pub(super) fn to_m(&self) -> f64 {
+    pub(super) fn end_m(&self) -> f64 {
         self.to_m
     }
 
@@ -93,7 +126,7 @@ impl Window {
 
     /// Smallest and largest force with which a `push` or `hold` can keep its speed, N.
     pub(super) fn keeping_range_n(&self, q: f64) -> (f64, f64) {
-        let share = self.share(q);
+        let share = self.share(q).max(0.0);
         match self.device {
             Device::Push { thrust_n, .. } => (0.0, thrust_n * share),
             Device::Hold { force_n, .. } => (-force_n * share, force_n * share),
@@ -139,6 +172,7 @@ pub(super) fn windows_near(
                 train_m,
                 device: entry.device,
                 mode: Mode::Working,
+                line: ShareLine::default(),
             });
         }
     }

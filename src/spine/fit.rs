@@ -170,7 +170,7 @@ impl Attitude {
             Self::Up(vector_curve) | Self::Left(vector_curve) => {
                 let across = vector(vector_curve, p).value;
                 let sine = across.cross(&tangent).norm() / across.norm();
-                (!(sine > LEAST_ACROSS)).then(|| {
+                (sine.is_nan() || sine <= LEAST_ACROSS).then(|| {
                     let found = format!(
                         "the fitted frame lies {:.1} deg from the track's direction, expected about 90 deg,",
                         sine.asin().to_degrees()
@@ -334,7 +334,7 @@ fn check_turns(table: &PointTable, centre: &[Vector3<f64>]) -> Result<(), Vec<Di
     };
     let wrong = corners
         .map(|i| (i, turn_deg(&i)))
-        .filter(|(_, turn)| !(*turn <= LARGEST_TURN_DEG))
+        .filter(|(_, turn)| turn.is_nan() || *turn > LARGEST_TURN_DEG)
         .map(|(i, turn)| {
             Diagnostic::error(format!(
                 "the track turns by {turn:.1} deg between the chords before and after this point, \

@@ -1,6 +1,9 @@
 //! From what was written to what is run: meanings checked while places are known.
 
+mod air;
+mod curve;
 pub(super) mod envelope;
+mod grid;
 mod holds;
 pub(super) mod operation;
 mod scenario;

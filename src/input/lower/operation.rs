@@ -1,7 +1,8 @@
 //! Lowers an operation file: where a run ends, and scenarios with nothing left to look up.
 
 use crate::input::field::{At, Field, Located, optional};
-use crate::input::lower::scenario::{Common, grid, scenarios};
+use crate::input::lower::grid::grid;
+use crate::input::lower::scenario::{Common, scenarios};
 use crate::input::lower::{Lower, zone};
 use crate::input::written::operation::{FinishKeys, OperationFile};
 use crate::input::{Goal, Operation, Scenario};

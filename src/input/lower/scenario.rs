@@ -1,17 +1,17 @@
-//! Lowers scenarios and grids, looking up what they name in the operation.
+//! Lowers scenarios, looking up what they name in the operation.
 
 use crate::diagnostic::Place;
 use crate::input::field::{At, Entries, Field, Located, Text, WordOr, optional};
+use crate::input::lower::air::{named_resistance, plain_air, plain_wind, refuse_name};
 use crate::input::lower::zone::{Kept, zones};
 use crate::input::lower::{Lower, Names};
 use crate::input::written::operation::{
-    AirKeys, GridKeys, OperationFile, ReleaseKeys, ResistanceKeys, RidersWord, ScenarioKeys,
-    WindKeys, WrittenRiders, ZoneSettings,
+    OperationFile, ReleaseKeys, RidersWord, ScenarioKeys, WrittenRiders, ZoneSettings,
 };
-use crate::input::{Air, Release, Resistance, Riders, Scenario, SeatName, Wind, Zone};
+use crate::input::{Air, Release, Resistance, Riders, Scenario, SeatName, Zone};
 
 /// Most scenarios, and most cases of a grid.
-const CASES: usize = 10_000;
+pub(super) const CASES: usize = 10_000;
 /// Most kinds of resistance.
 const RESISTANCES: usize = 1000;
 /// Most zones.
@@ -24,13 +24,13 @@ pub(super) struct Common {
     air: Option<Option<Air>>,
     pub(super) zones: Vec<Kept>,
     pub(super) zones_whole: bool,
-    release: Start,
-    root: At,
+    pub(super) release: Start,
+    pub(super) root: At,
 }
 
 /// A release as far as it is given.
 #[derive(Clone, Default)]
-struct Start {
+pub(super) struct Start {
     station: Option<(f64, Place)>,
     speed_m_s: Option<f64>,
     /// Something in it could not be read, so nothing is said to be missing.
@@ -78,7 +78,7 @@ impl Common {
         }
     }
 
-    fn resistance(&self, name: &Located<Text>, lower: &mut Lower) -> Option<Resistance> {
+    pub(super) fn resistance(&self, name: &Located<Text>, lower: &mut Lower) -> Option<Resistance> {
         let known = self
             .resistance
             .iter()
@@ -97,7 +97,7 @@ impl Common {
     }
 
     /// The air of a scenario that has none of its own.
-    fn air(&self, lower: &mut Lower) -> Option<Air> {
+    pub(super) fn air(&self, lower: &mut Lower) -> Option<Air> {
         self.air.unwrap_or_else(|| {
             let hint = "give `air` in the operation, or in every scenario";
             let mistake = lower.mistake(&self.root, "missing key `air`").key("air");
@@ -106,7 +106,7 @@ impl Common {
         })
     }
 
-    fn plain_zones(&self) -> Option<Vec<Zone>> {
+    pub(super) fn plain_zones(&self) -> Option<Vec<Zone>> {
         let zones = self.zones.iter().map(|kept| kept.zone.clone()).collect();
         self.zones_whole.then_some(zones)
     }
@@ -143,7 +143,7 @@ impl Start {
         self
     }
 
-    fn complete(self, at: &At, root: &At, lower: &mut Lower) -> Option<Release> {
+    pub(super) fn complete(self, at: &At, root: &At, lower: &mut Lower) -> Option<Release> {
         if !self.wrong && self.station.is_none() && self.speed_m_s.is_none() {
             lower.missing(root, "release");
         } else if !self.wrong {
@@ -160,113 +160,6 @@ impl Start {
             speed_m_s: self.speed_m_s?,
             place,
         })
-    }
-}
-
-fn named_resistance(
-    (name, keys): (Field<Text>, Field<ResistanceKeys>),
-    lower: &mut Lower,
-) -> Option<(String, Option<Resistance>)> {
-    let name = name.given()?.value.0;
-    Some((name, keys.given().and_then(|keys| resistance(keys, lower))))
-}
-
-fn resistance(written: Located<ResistanceKeys>, lower: &mut Lower) -> Option<Resistance> {
-    let (at, keys) = (written.at, written.value);
-    let mut coefficient = |field, key| {
-        let number = lower.require(field, &at, key)?;
-        Some(lower.coefficient(&number))
-    };
-    let running = coefficient(keys.running, "running");
-    let side = coefficient(keys.side, "side");
-    let bearings = match keys.bearings {
-        Some(field) => coefficient(field, "bearings"),
-        None => Some(0.0),
-    };
-    let area = lower.require(keys.drag_area, &at, "drag_area");
-    let drag_area_m2 = area.map(|area| lower.not_negative(&area));
-    Some(Resistance {
-        running: running?,
-        side: side?,
-        bearings: bearings?,
-        drag_area_m2: drag_area_m2?,
-    })
-}
-
-/// The air of an entry that is not in a grid.
-fn plain_air(written: Located<AirKeys>, lower: &mut Lower) -> Option<Air> {
-    refuse_name(written.value.name.as_ref(), lower);
-    air(written, lower)
-}
-
-fn air(written: Located<AirKeys>, lower: &mut Lower) -> Option<Air> {
-    let (at, keys) = (written.at, written.value);
-    let temperature_k = keys.temperature.map(|field| {
-        let temperature = field.given()?;
-        Some(lower.within(&temperature, 193.15..=333.15, "from -80 degC to 60 degC"))
-    });
-    match (keys.density, keys.altitude) {
-        (Some(density), None) => {
-            let density = density.given()?;
-            if temperature_k.is_some() {
-                lower.error(
-                    &at,
-                    "found both `density` and `temperature`, expected one of them",
-                );
-            }
-            Some(Air::Density(lower.not_negative(&density)))
-        }
-        (None, Some(altitude)) => {
-            let altitude = altitude.given()?;
-            // The first layer of ISO 2533.
-            let altitude_m = lower.within(&altitude, -2000.0..=11_000.0, "from -2000 m to 11000 m");
-            let temperature_k = match temperature_k {
-                Some(temperature) => Some(temperature?),
-                None => None,
-            };
-            Some(Air::Altitude {
-                altitude_m,
-                temperature_k,
-            })
-        }
-        (Some(_), Some(_)) => {
-            lower.error(
-                &at,
-                "found both `density` and `altitude`, expected one of them",
-            );
-            None
-        }
-        (None, None) => {
-            let hint = "give the air's `density`, or its `altitude` and perhaps `temperature`";
-            lower.error_with_hint(&at, "missing key `density`", hint);
-            None
-        }
-    }
-}
-
-/// The wind of an entry that is not in a grid.
-fn plain_wind(written: Located<WindKeys>, lower: &mut Lower) -> Option<Wind> {
-    refuse_name(written.value.name.as_ref(), lower);
-    wind(written, lower)
-}
-
-fn wind(written: Located<WindKeys>, lower: &mut Lower) -> Option<Wind> {
-    let (at, keys) = (written.at, written.value);
-    let speed = lower.require(keys.speed.unwrap_or(Field::Missing), &at, "speed");
-    let from = lower.require(keys.from.unwrap_or(Field::Missing), &at, "from");
-    let speed = speed?;
-    Some(Wind {
-        speed_m_s: lower.not_negative(&speed),
-        from_bearing_rad: from?.value.si,
-    })
-}
-
-fn refuse_name(name: Option<&Field<Text>>, lower: &mut Lower) {
-    if let Some(Field::Given(name)) = name {
-        lower.error(
-            &name.at,
-            "a `name` stands here, expected one only in a `grid`",
-        );
     }
 }
 
@@ -332,7 +225,8 @@ fn scenario(
     })
 }
 
-fn lowered_riders(written: WrittenRiders, at: &At, lower: &mut Lower) -> Option<Riders> {
+/// Who is aboard, in a word or seat by seat.
+pub(super) fn lowered_riders(written: WrittenRiders, at: &At, lower: &mut Lower) -> Option<Riders> {
     let keys = match written {
         WordOr::Word(word) => return Some(riders_of(word)),
         WordOr::Keys(keys) => keys,
@@ -413,179 +307,4 @@ fn scenario_zones(
     let zones = kept.into_iter().map(|kept| kept.zone);
     let on = zones.filter(|zone| !off.contains(&zone.name)).collect();
     common.zones_whole.then_some(on)
-}
-
-/// One value of a grid's list.
-#[derive(Clone)]
-enum Choice {
-    Riders(Riders),
-    Resistance(Resistance),
-    Air(Air),
-    Wind(Option<Wind>),
-}
-
-/// The values of one key, with their names and where the list stands.
-struct Choices {
-    at: At,
-    values: Vec<(String, Choice)>,
-}
-
-/// Every combination, the first key written varying slowest.
-pub(super) fn grid(
-    field: Field<GridKeys>,
-    common: &Common,
-    lower: &mut Lower,
-) -> Option<Vec<Scenario>> {
-    let grid = field.given()?;
-    let (at, keys) = (grid.at, grid.value);
-    let mut lists = vec![
-        choices(
-            lower.require(keys.riders, &at, "riders"),
-            "riders",
-            lower,
-            riders_choice,
-        ),
-        choices(
-            lower.require(keys.resistance, &at, "resistance"),
-            "resistance",
-            lower,
-            |name, lower| {
-                let resistance = common.resistance(&name, lower)?;
-                Some((name.value.0, Choice::Resistance(resistance)))
-            },
-        ),
-    ];
-    if let Some(air) = keys.air {
-        lists.push(choices(air.given(), "air", lower, air_choice));
-    }
-    if let Some(wind) = keys.wind {
-        lists.push(choices(wind.given(), "wind", lower, wind_choice));
-    }
-    let has_air = lists.iter().flatten().any(|list| list.is_air());
-    let air = match has_air {
-        true => None,
-        false => Some(common.air(lower)),
-    };
-    let release = common
-        .release
-        .clone()
-        .complete(&common.root, &common.root, lower);
-    let mut lists = lists.into_iter().collect::<Option<Vec<_>>>()?;
-    lists.sort_by_key(|list| list.at.span.start);
-    let base = Base {
-        air: match air {
-            Some(air) => Some(air?),
-            None => None,
-        },
-        zones: common.plain_zones()?,
-        release: release?,
-        place: lower.place(&at),
-    };
-    combine(&lists, &base, &at, lower)
-}
-
-impl Choices {
-    fn is_air(&self) -> bool {
-        self.at.key.ends_with(".air")
-    }
-}
-
-fn choices<T>(
-    list: Option<Located<Vec<Field<T>>>>,
-    what: &'static str,
-    lower: &mut Lower,
-    mut choice: impl FnMut(Located<T>, &mut Lower) -> Option<(String, Choice)>,
-) -> Option<Choices> {
-    let list = list?;
-    let (at, count) = (list.at.clone(), list.value.len());
-    let mut names = Names::of(what);
-    let mut values = Vec::new();
-    for item in lower.items(list, CASES, "values") {
-        let item_at = item.at.clone();
-        if let Some((name, value)) = choice(item, lower) {
-            if names.add_text(&name, &item_at, lower) {
-                values.push((name, value));
-            }
-        }
-    }
-    (values.len() == count && count > 0).then_some(Choices { at, values })
-}
-
-fn riders_choice(written: Located<WrittenRiders>, lower: &mut Lower) -> Option<(String, Choice)> {
-    let name = match &written.value {
-        WordOr::Word(_) => Some(lower.text(&written.at).to_owned()),
-        WordOr::Keys(keys) => value_name(keys.name.clone(), &written.at, lower),
-    };
-    let riders = lowered_riders(written.value, &written.at, lower);
-    Some((name?, Choice::Riders(riders?)))
-}
-
-fn air_choice(written: Located<AirKeys>, lower: &mut Lower) -> Option<(String, Choice)> {
-    let name = value_name(written.value.name.clone(), &written.at, lower);
-    let air = air(written, lower);
-    Some((name?, Choice::Air(air?)))
-}
-
-fn wind_choice(written: Located<WindKeys>, lower: &mut Lower) -> Option<(String, Choice)> {
-    let name = value_name(written.value.name.clone(), &written.at, lower);
-    let is_calm = written.value.speed.is_none() && written.value.from.is_none();
-    let wind = match is_calm {
-        true => Some(None),
-        false => wind(written, lower).map(Some),
-    };
-    Some((name?, Choice::Wind(wind?)))
-}
-
-fn value_name(field: Option<Field<Text>>, at: &At, lower: &mut Lower) -> Option<String> {
-    let name = lower.require(field.unwrap_or(Field::Missing), at, "name")?;
-    Some(name.value.0)
-}
-
-/// What all cases of a grid share.
-struct Base {
-    air: Option<Air>,
-    zones: Vec<Zone>,
-    release: Release,
-    place: Place,
-}
-
-fn combine(lists: &[Choices], base: &Base, at: &At, lower: &mut Lower) -> Option<Vec<Scenario>> {
-    let lengths = lists.iter().map(|list| list.values.len());
-    let count = lengths.fold(1_usize, usize::saturating_mul);
-    if count > CASES {
-        let message = format!("a grid of {count} cases, expected at most {CASES}");
-        lower.error(at, message);
-        return None;
-    }
-    (0..count).map(|index| case(lists, index, base)).collect()
-}
-
-fn case(lists: &[Choices], index: usize, base: &Base) -> Option<Scenario> {
-    let mut rest = index;
-    let mut picked = Vec::new();
-    for list in lists.iter().rev() {
-        picked.push(&list.values[rest % list.values.len()]);
-        rest /= list.values.len();
-    }
-    picked.reverse();
-    let names: Vec<&str> = picked.iter().map(|(name, _)| name.as_str()).collect();
-    let (mut riders, mut resistance, mut air, mut wind) = (None, None, base.air, None);
-    for (_, choice) in &picked {
-        match choice {
-            Choice::Riders(value) => riders = Some(value.clone()),
-            Choice::Resistance(value) => resistance = Some(*value),
-            Choice::Air(value) => air = Some(*value),
-            Choice::Wind(value) => wind = *value,
-        }
-    }
-    Some(Scenario {
-        name: names.join("+"),
-        riders: riders?,
-        resistance: resistance?,
-        air: air?,
-        wind,
-        zones: base.zones.clone(),
-        release: base.release.clone(),
-        place: base.place.clone(),
-    })
 }

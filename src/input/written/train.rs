@@ -38,7 +38,7 @@ pub(in crate::input) struct CarKeys {
     /// From its nose to the nose of the next car.
     pub(in crate::input) length: Field<Quantity<Length>>,
     /// Front and rear axle, behind the car's nose.
-    pub(in crate::input) axles: Field<(Field<Quantity<Length>>, Field<Quantity<Length>>)>,
+    pub(in crate::input) axles: Field<Axles>,
     /// Empty.
     pub(in crate::input) mass: Field<Quantity<Mass>>,
     /// Mass centre of the empty car, from the midpoint between its axles at rail height.
@@ -48,6 +48,9 @@ pub(in crate::input) struct CarKeys {
     /// Its seats.
     pub(in crate::input) seats: Field<Vec<Field<SeatKeys>>>,
 }
+
+/// Front and rear.
+pub(in crate::input) type Axles = (Field<Quantity<Length>>, Field<Quantity<Length>>);
 
 /// A position from the midpoint between a car's axles at rail height.
 #[derive(Debug, serde::Deserialize, JsonSchema)]
