@@ -144,7 +144,7 @@ impl<'a> Judging<'a> {
             id,
             design: &plan.variants[id.variant],
             state: run_state(history, &samples),
-            train: TrainRecord::new(history, &samples),
+            train: TrainRecord::new(history, &samples, &plan.study.operation.goal),
             of_train: Vec::new(),
             samples,
         };

@@ -64,12 +64,12 @@ impl Way<'_> {
 
     /// The stretches of the record whose stations lie in any of the intervals: in order and apart.
     fn stretches(&self, intervals_m: &[Interval]) -> Vec<Stretch> {
-        let visits = self.unrolled(intervals_m).into_iter();
-        let visits = visits.flat_map(|interval_m| self.visits(interval_m));
-        let mut visits: Vec<Stretch> = visits.filter_map(|visit| self.delayed(visit)).collect();
-        visits.sort_by(|a, b| a.from.total_cmp(&b.from));
+        let intervals_m = self.unrolled(intervals_m).into_iter();
+        let all = intervals_m.flat_map(|interval_m| visits(self.station_m, interval_m));
+        let mut all: Vec<Stretch> = all.filter_map(|visit| self.delayed(visit)).collect();
+        all.sort_by(|a, b| a.from.total_cmp(&b.from));
         let mut apart: Vec<Stretch> = Vec::new();
-        for visit in visits {
+        for visit in all {
             push_or_extend(&mut apart, visit);
         }
         apart
@@ -108,22 +108,6 @@ impl Way<'_> {
             }
         }
         merged
-    }
-
-    /// When the way lies in an interval: every pass by itself, forward or backward, or at rest in it.
-    fn visits(&self, interval_m: Interval) -> Vec<Stretch> {
-        let mut visits = Vec::new();
-        for (sample, pair) in self.station_m.windows(2).enumerate() {
-            if let Some((from, to)) = part_within((pair[0], pair[1]), interval_m) {
-                let sample = sample as f64;
-                let visit = Stretch {
-                    from: sample + from,
-                    to: sample + to,
-                };
-                push_or_extend(&mut visits, visit);
-            }
-        }
-        visits
     }
 
     /// Where the record tells of a visit; none where it lasts no time or the record ends before.
@@ -227,6 +211,22 @@ fn without_seam(from_m: f64, to_m: f64, spine: &Spine) -> Vec<Interval> {
     vec![(from_m, spine.length_m()), (0.0, to_m)]
 }
 
+/// When a way lies in an interval: every pass by itself, forward or backward, or at rest in it.
+fn visits(station_m: &[f64], interval_m: Interval) -> Vec<Stretch> {
+    let mut visits = Vec::new();
+    for (sample, pair) in station_m.windows(2).enumerate() {
+        if let Some((from, to)) = part_within((pair[0], pair[1]), interval_m) {
+            let sample = sample as f64;
+            let visit = Stretch {
+                from: sample + from,
+                to: sample + to,
+            };
+            push_or_extend(&mut visits, visit);
+        }
+    }
+    visits
+}
+
 /// The part of a straight way between two stations that lies in an interval.
 fn part_within((start_m, end_m): (f64, f64), (from_m, to_m): Interval) -> Option<(f64, f64)> {
     let within = |station_m: f64| (from_m..=to_m).contains(&station_m);
@@ -255,7 +255,34 @@ fn push_or_extend(stretches: &mut Vec<Stretch>, next: Stretch) {
 
 #[cfg(test)]
 mod tests {
-    use super::part_within;
+    use proptest::prelude::*;
+
+    use super::{part_within, visits};
+    use crate::study::why::read_at;
+
+    proptest! {
+        /// A look at every hundredth of the way: it lies in a visit where, and only where, its station lies in the interval.
+        #[test]
+        fn visits_agree_with_a_close_look(
+            stations_m in prop::collection::vec(prop_oneof![-9.0..9.0f64, (-9..10i32).prop_map(f64::from)], 2..12),
+            from_m in -9..9i32, length_m in 1..9i32,
+        ) {
+            let interval_m = (f64::from(from_m), f64::from(from_m + length_m));
+            let visits = visits(&stations_m, interval_m);
+            for pair in visits.windows(2) {
+                prop_assert!(pair[0].to < pair[1].from);
+            }
+            for look in 0..=100 * (stations_m.len() - 1) {
+                let position = look as f64 / 100.0;
+                let station_m = read_at(&stations_m, position);
+                let margin_m = (station_m - interval_m.0).min(interval_m.1 - station_m);
+                let visited = visits.iter().any(|v| (v.from..=v.to).contains(&position));
+                if margin_m.abs() > 1e-9 {
+                    prop_assert_eq!(visited, margin_m > 0.0, "at {}", position);
+                }
+            }
+        }
+    }
 
     #[test]
     fn borders_cut_a_way_forward_and_backward() {

@@ -5,7 +5,7 @@ use super::case::Judging;
 use super::holds::{Way, in_scenario};
 use super::why::read_at;
 use crate::envelope::{self, Breach, Judgement, Scope, SpeedRecord};
-use crate::input::{Envelope, Rule};
+use crate::input::{Envelope, Goal, Rule};
 use crate::motion::{History, RunEnd, Samples};
 
 /// Largest speed of a train that the run's end took for one at rest, m/s: standstill is found to 1e-6 s.
@@ -27,7 +27,7 @@ struct Node {
 
 impl TrainRecord {
     /// Samples alone may miss the instants at which the train stands, and end before the run.
-    pub(super) fn new(history: &History<'_>, samples: &Samples) -> Self {
+    pub(super) fn new(history: &History<'_>, samples: &Samples, goal: &Goal) -> Self {
         let series = samples.train_station_m.iter().zip(&samples.speed_m_s);
         let sampled = series
             .enumerate()
@@ -43,7 +43,10 @@ impl TrainRecord {
             speed_m_s: 0.0,
             is_stop: true,
         });
-        let mut nodes: Vec<Node> = sampled.chain(reversals).chain([end(history)]).collect();
+        let mut nodes: Vec<Node> = sampled
+            .chain(reversals)
+            .chain([end(history, goal)])
+            .collect();
         nodes.sort_by(|a, b| a.time_s.total_cmp(&b.time_s));
         let stops = nodes.iter().enumerate().filter(|(_, node)| node.is_stop);
         Self {
@@ -57,12 +60,14 @@ impl TrainRecord {
     }
 }
 
-fn end(history: &History<'_>) -> Node {
+/// The end of a run; one with a finish completes at rest only, one without it on the move only.
+fn end(history: &History<'_>, goal: &Goal) -> Node {
     let state = history.state_at(history.duration_s);
     let speed_m_s = state.map_or(0.0, |state| state.speed_m_s);
     let is_stop = match history.end {
         RunEnd::Stalled => true,
-        RunEnd::Completed | RunEnd::RolledBack => speed_m_s.abs() <= REST_M_S,
+        RunEnd::Completed => matches!(goal, Goal::Finish { .. }),
+        RunEnd::RolledBack => speed_m_s.abs() <= REST_M_S,
         RunEnd::Overran | RunEnd::TimeLimit => false,
     };
     Node {

@@ -4,6 +4,7 @@ mod check;
 mod export;
 mod fixture;
 mod rules;
+mod speed_rules;
 mod wrong_input;
 
 use std::fs;
