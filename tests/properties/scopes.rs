@@ -126,6 +126,18 @@ fn exact_borders_cut_a_spell() {
     assert_close(cut(&[(0.0, 30.0)]), 1.0, 1e-12);
 }
 
+/// What a border leaves of a load, 0.5 s of 0.9 g, is too short to be judged and must not hide 0.6 g for 2 s.
+#[test]
+fn exact_a_piece_too_short_hides_nothing() {
+    let scope = Scope::Part {
+        stretches: vec![Stretch { from: 0.5, to: 6.0 }],
+        missing: None,
+    };
+    let signal = [0.9, 0.9, 0.1, 0.6, 0.6, 0.6, 0.1];
+    let judgement = judged_in(&limit_for(1.0), 1.0, &signal, 1.0, &scope);
+    assert_close(judgement.utilisation.expect("judged"), 0.6, 1e-12);
+}
+
 /// A floor of 0.2 g scaled by 0.5 allows 0.4 g less than 1 g, so that 0.6 g is the least load (design: 1 − value is scaled).
 #[test]
 fn exact_scaled_floor() {
