@@ -1,7 +1,7 @@
 //! The books of a run: what energy it had, what each force took or gave.
 
 use super::equation::{Law, Model};
-use crate::numerics::quadrature::integrate;
+use crate::numerics::quadrature::integrate_step;
 use crate::numerics::root::bracketed;
 
 /// When an axle passes a break is found to this, s.
@@ -75,13 +75,16 @@ impl Books {
                 (state(t).0 - break_m) * (to_m - from_m)
             })
         };
-        let breaks = model.ride.poses.breaks_between_m(from_m, to_m);
+        let breaks = match law.keeps_speed() {
+            true => model.ride.poses.breaks_between_m(from_m, to_m),
+            false => &[],
+        };
         let mut cuts = breaks.iter().map(passing).collect::<Vec<_>>();
         cuts.extend([from_s, to_s]);
         cuts.sort_by(f64::total_cmp);
         for ends in cuts.windows(2) {
             let zero = Works::zero(self.works.zones.len());
-            let done = integrate(ends[0], ends[1], zero, power);
+            let done = integrate_step(ends[0], ends[1], zero, power);
             let sum = std::mem::replace(&mut self.works, Works::zero(0));
             self.works = sum + done;
         }

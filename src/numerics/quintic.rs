@@ -103,17 +103,19 @@ impl<const N: usize> Quintic<N> {
     }
 
     /// Values and two derivatives at `d` beyond the left node of an interval.
+    ///
+    /// Horner's scheme for a polynomial and its derivatives, all `N` functions side by side.
     pub fn jets(&self, interval: usize, d: f64) -> Jets<N> {
         let c = &self.coefficients[interval];
-        let mut out = [[0.0; N]; 3];
-        for i in 0..N {
-            let (c3, c4, c5) = (c[3][i], c[4][i], c[5][i]);
-            out[0][i] = c[0][i] + d * (c[1][i] + d * (c[2][i] + d * (c3 + d * (c4 + d * c5))));
-            out[1][i] =
-                c[1][i] + d * (2.0 * c[2][i] + d * (3.0 * c3 + d * (4.0 * c4 + d * 5.0 * c5)));
-            out[2][i] = 2.0 * c[2][i] + d * (6.0 * c3 + d * (12.0 * c4 + d * 20.0 * c5));
+        let (mut value, mut first, mut half_second) = (c[5], [0.0; N], [0.0; N]);
+        for row in c[..5].iter().rev() {
+            for i in 0..N {
+                half_second[i] = half_second[i] * d + first[i];
+                first[i] = first[i] * d + value[i];
+                value[i] = value[i] * d + row[i];
+            }
         }
-        out
+        [value, first, half_second.map(|h| 2.0 * h)]
     }
 
     /// Third derivatives at `d` beyond the left node of an interval.

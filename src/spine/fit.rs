@@ -78,15 +78,28 @@ impl Fitted {
         self.length_m
     }
 
-    /// Position and attitude at a station.
-    pub(super) fn at(&self, station_m: f64) -> SpinePoint {
+    fn parameter_at(&self, station_m: f64) -> f64 {
         let s = if self.closed {
             station_m.rem_euclid(self.length_m)
         } else {
             station_m
         };
         let (interval, d) = self.stations.locate(s);
-        let p = self.parameters.jets(interval, d)[0][0];
+        self.parameters.jets(interval, d)[0][0]
+    }
+
+    /// Position, m, and tangent at a station.
+    pub(super) fn path_at(&self, station_m: f64) -> (Vector3<f64>, Vector3<f64>) {
+        let [r, r1, ..] = self
+            .path
+            .at(self.parameter_at(station_m))
+            .map(Vector3::from);
+        (r, r1.normalize())
+    }
+
+    /// Position and attitude at a station.
+    pub(super) fn at(&self, station_m: f64) -> SpinePoint {
+        let p = self.parameter_at(station_m);
         let [r, r1, r2, r3] = self.path.at(p).map(Vector3::from);
         let by_arc = ByArc::new(r1, r2, r3);
         let tangent = by_arc.tangent(r1, r2, r3);
