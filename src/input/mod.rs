@@ -11,6 +11,7 @@ mod document;
 mod envelope;
 mod field;
 mod files;
+mod holds;
 mod keys;
 mod lower;
 mod operation;
@@ -34,8 +35,8 @@ mod quantity_tests;
 mod tests;
 
 pub use envelope::{
-    Axis, Between, Demand, Document, Envelope, Filter, GravityTerm, Rule, RuleKind, Sign, Status,
-    Sustained,
+    Axis, Between, Demand, Document, Envelope, Filter, GravityTerm, NameAt, Rule, RuleKind, Scale,
+    Sign, SpeedBounds, StationRange, Status, Stop, Sustained, Where,
 };
 pub use operation::{
     Air, Device, Goal, Operation, Release, Resistance, Riders, Scenario, SeatName, Wind, Zone,

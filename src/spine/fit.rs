@@ -611,22 +611,33 @@ fn check_turns(table: &PointTable, centre: &[Vector3<f64>]) -> Result<(), Vec<Di
         let behind = centre[*i] - centre[(i + n - 1) % n];
         behind.angle(&ahead).to_degrees()
     };
-    let wrong = corners
+    let sharp = corners
         .map(|i| (i, turn_deg(&i)))
-        .filter(|(_, turn)| turn.is_nan() || *turn > LARGEST_TURN_DEG)
-        .map(|(i, turn)| {
-            Diagnostic::error(format!(
-                "the track turns by {turn:.1} deg between the chords before and after this point, \
-                 expected at most {LARGEST_TURN_DEG} deg: the points are too far apart, or out of order, \
-                 to carry a curve"
-            ))
-            .at(&table.row_place(i))
-            .hint("give points closer together, and look for a row out of order or a slip of the pen")
-        })
-        .take(20)
-        .collect::<Vec<_>>();
+        .filter(|(_, turn)| !(*turn <= LARGEST_TURN_DEG));
+    let sharp = sharp.collect::<Vec<_>>();
+    let shown = sharp.iter().take(SHARP_SHOWN).map(|&(i, turn)| {
+        Diagnostic::error(format!(
+            "the track turns by {turn:.1} deg between the chords before and after this point, \
+             expected at most {LARGEST_TURN_DEG} deg: the points are too far apart, or out of order, \
+             to carry a curve"
+        ))
+        .at(&table.row_place(i))
+        .hint("give points closer together, and look for a row out of order or a slip of the pen")
+    });
+    let mut wrong = shown.collect::<Vec<_>>();
+    if let Some(more) = sharp
+        .len()
+        .checked_sub(SHARP_SHOWN)
+        .filter(|&more| more > 0)
+    {
+        let message = format!("the track turns too far at {more} more points of this table");
+        wrong.push(Diagnostic::error(message).at(&table.place));
+    }
     if wrong.is_empty() { Ok(()) } else { Err(wrong) }
 }
+
+/// Points at which a track turns too far that are shown one by one.
+const SHARP_SHOWN: usize = 5;
 
 fn components(vectors: &[Vector3<f64>]) -> Vec<[f64; 3]> {
     vectors.iter().map(|v| [v.x, v.y, v.z]).collect()

@@ -3,6 +3,8 @@
 mod check;
 mod export;
 mod fixture;
+mod rules;
+mod speed_rules;
 mod wrong_input;
 
 use std::fs;

@@ -49,7 +49,7 @@ fn mistakes_between_files_name_their_lines() {
     for said in [
         "`until` 600 m lies beyond the end",
         "released at 0.5 m the train is not wholly on the track",
-        "zone `trim` reaches to 80 m",
+        "zone `trim` reaches to 80 m, off the track",
         "zone `back` runs backwards",
         "ride.operation.yaml:",
     ] {
