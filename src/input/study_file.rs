@@ -8,9 +8,7 @@ use crate::input::holds;
 use crate::input::lower::Lower;
 use crate::input::read::Reader;
 use crate::input::written::study::{StudyFile, VariantKeys};
-use crate::input::{
-    Envelope, FileKind, Filter, Goal, Riders, SeatName, Study, TrackSource, Train, Variant,
-};
+use crate::input::{Envelope, FileKind, Filter, Riders, SeatName, Study, Train, Variant};
 
 /// Most variants that are read.
 const VARIANTS: usize = 100;
