@@ -182,7 +182,10 @@ impl<'a> Table<'a> {
         let stated = header.columns.len();
         let error_m = |row: &Vec<f64>| row[stated] * 1e-3;
         let errors_m = header.error.map(|_| values.iter().map(error_m).collect());
-        let (columns, grids) = (columns(header.layout, &values), self.grids(&header));
+        let (columns, grids) = (
+            columns(header.layout, &values),
+            self.grids(&header, &values),
+        );
         Some(Read {
             columns,
             rows,
@@ -191,14 +194,16 @@ impl<'a> Table<'a> {
         })
     }
 
-    /// The grids of the numbers, in SI. The mean of two rails is no coarser than each.
-    fn grids(&self, header: &Header) -> Grids {
+    /// The grids of the numbers, in SI. The mean of two rails is no coarser than each; an attitude
+    /// that never changes is a design value, not a rounded one.
+    fn grids(&self, header: &Header, values: &[Vec<f64>]) -> Grids {
         let [position, attitude] = self.digits;
+        let constant = values.windows(2).all(|pair| pair[0][3..] == pair[1][3..]);
         Grids {
             position_m: position.grid(header.columns[0].1),
             attitude: match header.layout {
-                Layout::Rails => None,
-                Layout::Bank | Layout::Up => attitude.grid(header.columns[3].1),
+                Layout::Bank | Layout::Up if !constant => attitude.grid(header.columns[3].1),
+                Layout::Rails | Layout::Bank | Layout::Up => None,
             },
         }
     }
