@@ -143,6 +143,10 @@ impl Visitor<'_> for TextVisitor {
     }
 }
 
+/// The same as a regular expression of JSON Schema: something that shows, and no control characters.
+const TEXT: &str =
+    r"^[^\u0000-\u0008\u000e-\u001f\u007f-\u0084\u0086-\u009f]*[^\u0000- \u007f-\u00a0][^\u0000-\u0008\u000e-\u001f\u007f-\u0084\u0086-\u009f]*$";
+
 impl JsonSchema for Text {
     fn inline_schema() -> bool {
         true
@@ -153,7 +157,11 @@ impl JsonSchema for Text {
     }
 
     fn json_schema(_: &mut SchemaGenerator) -> Schema {
-        json_schema!({"type": ["string", "number", "boolean"], "minLength": 1})
+        json_schema!({
+            "type": ["string", "number", "boolean"],
+            "pattern": TEXT,
+            "patternErrorMessage": "expected some text without control characters"
+        })
     }
 }
 

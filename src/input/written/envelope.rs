@@ -6,7 +6,7 @@ use serde::Deserialize;
 use crate::input::dimension::{Frequency, Time};
 use crate::input::field::{Field, Text, WordOr};
 use crate::input::quantity::Quantity;
-use crate::input::written::{Curve, Later};
+use crate::input::written::{Curve, Later, alternatives};
 
 /// An acceptance envelope: rules from one document, transcribed by the user.
 #[derive(Debug, Deserialize, JsonSchema)]
@@ -14,6 +14,7 @@ use crate::input::written::{Curve, Later};
 #[schemars(rename = "envelope")]
 pub(in crate::input) struct EnvelopeFile {
     /// Version of the file format: 1.
+    #[schemars(extend("const" = 1))]
     pub(in crate::input) crestfall: Field<u64>,
     /// Name of the envelope.
     pub(in crate::input) envelope: Field<Text>,
@@ -26,6 +27,7 @@ pub(in crate::input) struct EnvelopeFile {
     /// What its loads are filtered with: `none`, or `{butterworth: {poles, corner, passes}}`.
     pub(in crate::input) filter: Field<WordOr<FilterWord, FilterKeys>>,
     /// Its rules.
+    #[schemars(extend("minItems" = 1))]
     pub(in crate::input) rules: Field<Vec<Field<RuleKeys>>>,
 }
 
@@ -78,7 +80,7 @@ pub(in crate::input) enum FilterWord {
 /// A filter by family.
 #[derive(Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "filter")]
+#[schemars(rename = "filter", extend("required" = ["butterworth"]))]
 pub(in crate::input) struct FilterKeys {
     /// Butterworth low-pass.
     pub(in crate::input) butterworth: Option<Field<ButterworthKeys>>,
@@ -96,6 +98,7 @@ pub(in crate::input) struct FilterKeys {
 #[schemars(rename = "butterworth")]
 pub(in crate::input) struct ButterworthKeys {
     /// 1 to 8.
+    #[schemars(extend("minimum" = 1, "maximum" = 8))]
     pub(in crate::input) poles: Field<u64>,
     /// Corner frequency (half the power).
     pub(in crate::input) corner: Field<Quantity<Frequency>>,
@@ -119,7 +122,7 @@ pub(in crate::input) enum PassesWord {
 /// One requirement.
 #[derive(Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "rule")]
+#[schemars(rename = "rule", transform = alternatives::rule)]
 pub(in crate::input) struct RuleKeys {
     /// Its name, unique in the envelope.
     pub(in crate::input) id: Field<Text>,

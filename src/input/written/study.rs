@@ -13,6 +13,7 @@ use crate::input::quantity::Quantity;
 #[schemars(rename = "study")]
 pub(in crate::input) struct StudyFile {
     /// Version of the file format: 1.
+    #[schemars(extend("const" = 1))]
     pub(in crate::input) crestfall: Field<u64>,
     /// Name of the study.
     pub(in crate::input) study: Field<Text>,
@@ -25,6 +26,7 @@ pub(in crate::input) struct StudyFile {
     /// Path of the operation file.
     pub(in crate::input) operation: Field<Text>,
     /// Paths of the envelope files.
+    #[schemars(extend("minItems" = 1))]
     pub(in crate::input) envelopes: Field<Vec<Field<Text>>>,
     /// Local gravity; 9.80665 m/s2 where left out.
     pub(in crate::input) gravity: Option<Field<Quantity<Acceleration>>>,
