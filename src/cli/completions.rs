@@ -5,7 +5,14 @@ use clap_complete::Shell;
 
 use super::{Failure, Status, output};
 
+/// What `--help` says besides.
+const HELP: &str = "\
+bash: crestfall completions bash > ~/.local/share/bash-completion/completions/crestfall
+zsh:  crestfall completions zsh > a file `_crestfall` in a folder of $fpath
+fish: crestfall completions fish > ~/.config/fish/completions/crestfall.fish";
+
 #[derive(Args)]
+#[command(after_help = HELP)]
 pub(super) struct Arguments {
     /// The shell
     #[arg(value_enum)]

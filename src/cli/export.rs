@@ -74,7 +74,8 @@ fn export_case(
     record.each_seat(|seat| {
         let path = folder.join(format!("car{}-{}.csv", seat.car, encoded(seat.seat)));
         files += 1;
-        whole_file::replace(&path, |out| report::write_record(seat, out)).map_err(|error| not_written(&path, &error))
+        whole_file::replace(&path, |out| report::write_record(seat, out))
+            .map_err(|error| not_written(&path, &error))
     })?;
     Ok(Ok(files))
 }

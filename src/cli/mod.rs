@@ -50,6 +50,7 @@ enum Command {
 #[derive(Args)]
 struct StudyArguments {
     /// The study file
+    #[arg(value_name = "STUDY")]
     study: PathBuf,
     /// Only this variant; may be given several times
     #[arg(long = "variant", value_name = "NAME")]

@@ -25,9 +25,12 @@ const FILES: [(&str, &str); 5] = [
     (STUDY, include_str!("new/ride.study.yaml")),
 ];
 
-/// Writes a track of elements, a train, an operation, an envelope of invented numbers and the study
-/// that brings them together, with comments that explain them. Files that are there are never overwritten.
+/// What `--help` says besides.
+const HELP: &str = "Writes a track of elements, a train, an operation, an envelope of invented numbers and the study \
+that brings them together, with comments that explain them. Files that are there are never overwritten.";
+
 #[derive(Args)]
+#[command(after_help = HELP)]
 pub(super) struct Arguments {
     /// The folder to write into; made where it does not exist
     #[arg(value_name = "DIR")]
@@ -51,20 +54,25 @@ pub(super) fn run(arguments: &Arguments) -> Result<Status, Failure> {
     Ok(Status::Inside)
 }
 
-/// Says of every file that is in the way, before anything is written.
+/// Names every file that is in the way, before anything is written.
 fn refuse_to_overwrite(folder: &Path) -> Result<(), Failure> {
-    let paths = FILES.map(|(name, _)| folder.join(name));
     // A link that leads nowhere is in the way too.
-    let taken = paths.iter().filter(|path| path.symlink_metadata().is_ok());
-    let mistakes: Vec<Diagnostic> = taken
-        .map(|path| {
-            Diagnostic::error(format!("{} exists already", path.display()))
-                .hint("give a folder without it; nothing has been written")
-        })
+    let is_taken = |name: &&str| folder.join(name).symlink_metadata().is_ok();
+    let taken: Vec<&str> = FILES
+        .map(|(name, _)| name)
+        .into_iter()
+        .filter(is_taken)
         .collect();
-    match mistakes.is_empty() {
+    match taken.is_empty() {
         true => Ok(()),
-        false => Err(Failure::Input(mistakes)),
+        false => Err(Failure::Input(vec![
+            Diagnostic::error(format!(
+                "{} holds {} already, expected a folder without",
+                folder.display(),
+                taken.join(", ")
+            ))
+            .hint("nothing has been written; name another folder"),
+        ])),
     }
 }
 

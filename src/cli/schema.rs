@@ -5,15 +5,18 @@ use crestfall::input::{self, FileKind};
 
 use super::{Failure, Status, output};
 
-/// Two steps make an editor complete and check a file while one types: write the schema to a file,
-///
-///     crestfall schema track > track.schema.json
-///
-/// and begin each track file with the line
-///
-///     # yaml-language-server: $schema=track.schema.json
+/// What `--help` says besides: how an editor comes to use it (common practice of YAML language servers).
+const HELP: &str = "\
+For an editor that completes and checks while you type, write the schema to a file:
+
+    crestfall schema track > track.schema.json
+
+and begin each track file with the line
+
+    # yaml-language-server: $schema=track.schema.json";
+
 #[derive(Args)]
-#[command(verbatim_doc_comment)]
+#[command(after_help = HELP)]
 pub(super) struct Arguments {
     /// The kind of file
     #[arg(value_enum)]

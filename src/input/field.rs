@@ -144,8 +144,7 @@ impl Visitor<'_> for TextVisitor {
 }
 
 /// The same as a regular expression of JSON Schema: something that shows, and no control characters.
-const TEXT: &str =
-    r"^[^\u0000-\u0008\u000e-\u001f\u007f-\u0084\u0086-\u009f]*[^\u0000- \u007f-\u00a0][^\u0000-\u0008\u000e-\u001f\u007f-\u0084\u0086-\u009f]*$";
+const TEXT: &str = r"^[^\u0000-\u0008\u000e-\u001f\u007f-\u0084\u0086-\u009f]*[^\u0000- \u007f-\u00a0][^\u0000-\u0008\u000e-\u001f\u007f-\u0084\u0086-\u009f]*$";
 
 impl JsonSchema for Text {
     fn inline_schema() -> bool {

@@ -240,8 +240,7 @@ const NUMBER: &str = r"([0-9]+\.?[0-9]*|\.[0-9]+)([eE][+-]?[0-9]+)?";
 /// A number that is zero.
 const ZERO: &str = r"(0+\.?0*|\.0+)([eE][+-]?[0-9]+)?";
 /// White space as Rust trims it; the `\s` of editors differs in two characters.
-const SPACE: &str =
-    r"[\t-\r \u0085\u00a0\u1680\u2000-\u200a\u2028\u2029\u202f\u205f\u3000]";
+const SPACE: &str = r"[\t-\r \u0085\u00a0\u1680\u2000-\u200a\u2028\u2029\u202f\u205f\u3000]";
 
 fn units_pattern<D: Dimension>() -> String {
     let names: Vec<String> = D::UNITS.iter().map(|unit| escaped(unit.name)).collect();

@@ -2,7 +2,8 @@
 
 use schemars::Schema;
 use schemars::generate::SchemaSettings;
-use serde_json::Value;
+use schemars::transform::RecursiveTransform;
+use serde_json::{Value, json};
 
 use crate::input::FileKind;
 use crate::input::written::envelope::EnvelopeFile;
@@ -16,7 +17,11 @@ use crate::input::written::train::TrainFile;
 /// It holds keys, words, which keys need or exclude each other and the forms of
 /// quantities; what a value means is checked when a file is read.
 pub fn schema(kind: FileKind) -> Value {
-    let generator = SchemaSettings::draft2020_12().into_generator();
+    let mut settings = SchemaSettings::draft2020_12();
+    settings
+        .transforms
+        .push(Box::new(RecursiveTransform(refuse_nothing)));
+    let generator = settings.into_generator();
     let mut schema = match kind {
         FileKind::Study => generator.into_root_schema_for::<StudyFile>(),
         FileKind::Track => generator.into_root_schema_for::<TrackFile>(),
@@ -26,6 +31,26 @@ pub fn schema(kind: FileKind) -> Value {
     };
     describe(&mut schema);
     schema.to_value()
+}
+
+/// A key may be left out, but one that is there has a value.
+fn refuse_nothing(schema: &mut Schema) {
+    let nothing = json!({"type": "null"});
+    if let Some(Value::Array(mut choices)) = schema.remove("anyOf") {
+        choices.retain(|choice| *choice != nothing);
+        match <[Value; 1]>::try_from(choices) {
+            Ok([Value::Object(only)]) => schema.ensure_object().extend(only),
+            Ok([other]) => drop(schema.insert("anyOf".to_owned(), json!([other]))),
+            Err(several) => drop(schema.insert("anyOf".to_owned(), several.into())),
+        }
+    }
+    if let Some(Value::Array(types)) = schema.get_mut("type") {
+        types.retain(|name| name != "null");
+        if let [only] = &types[..] {
+            let only = only.clone();
+            schema.insert("type".to_owned(), only);
+        }
+    }
 }
 
 /// Adds to the description of the whole how an editor comes to use it.

@@ -70,6 +70,9 @@ proptest! {
 fn only_the_reader_knows_the_size_of_a_number() {
     let length = validator::<Quantity<Length>>();
     for text in ["1e400 m", "1e-400 m"] {
-        assert!(accepts(&length, text) && !reads::<Quantity<Length>>(text), "{text}");
+        assert!(
+            accepts(&length, text) && !reads::<Quantity<Length>>(text),
+            "{text}"
+        );
     }
 }

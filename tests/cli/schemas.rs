@@ -163,7 +163,10 @@ fn undescribed(part: &Value, path: &str, without: &mut Vec<String>) -> usize {
     match part {
         Value::Object(entries) => {
             // Conditions name keys of the same object again.
-            for (key, value) in entries.iter().filter(|(key, _)| !CONDITIONS.contains(&key.as_str())) {
+            for (key, value) in entries
+                .iter()
+                .filter(|(key, _)| !CONDITIONS.contains(&key.as_str()))
+            {
                 let path = format!("{path}.{key}");
                 if key == "properties" {
                     for (name, value) in value.as_object().expect("keys") {
