@@ -35,14 +35,18 @@ impl Falling {
 }
 
 impl LimitCurve {
-    /// The curve of a rule, counted like its signal: a floor `v` is the limit 1 − v.
-    pub(super) fn new(rule: &Sustained) -> Self {
+    /// The curve of a rule times a factor, counted like its signal: a floor `v` is the limit 1 − v.
+    pub(super) fn new(rule: &Sustained, factor: f64) -> Self {
         let counted = |value: f64| match rule.demand {
             Demand::Limit(_) => value,
             Demand::Floor => 1.0 - value,
         };
         Self {
-            points: rule.curve.iter().map(|&(t, v)| (t, counted(v))).collect(),
+            points: rule
+                .curve
+                .iter()
+                .map(|&(t, v)| (t, factor * counted(v)))
+                .collect(),
             between: rule.between,
             ignore_below_s: rule.ignore_below_s,
         }

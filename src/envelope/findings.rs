@@ -3,8 +3,8 @@
 /// A window held against the limit for its length; positions in samples.
 #[derive(Clone, Copy, Debug)]
 pub(super) struct Candidate {
-    /// First and last sample inside.
-    pub(super) samples: (usize, usize),
+    /// First and last node of the signal inside.
+    pub(super) nodes: (usize, usize),
     /// Begin and end.
     pub(super) ends: (f64, f64),
     /// Length, s.
@@ -66,9 +66,8 @@ impl Unions {
         self.0.iter()
     }
 
-    /// Samples decide, not interpolated ends: they hold no rounding.
+    /// Nodes decide, not interpolated ends: they hold no rounding.
     fn pop_held_by(&mut self, window: &Candidate) -> Option<Union> {
-        self.0
-            .pop_if(|held| held.outer.samples.0 >= window.samples.0)
+        self.0.pop_if(|held| held.outer.nodes.0 >= window.nodes.0)
     }
 }

@@ -2,7 +2,7 @@
 
 use std::fmt;
 
-use crate::input;
+use crate::input::{self, RuleKind};
 
 /// The outcome of a rule, from best to worst: the worst of several is their maximum.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
@@ -40,7 +40,16 @@ pub enum RunState {
     Incomplete(String),
 }
 
-/// A window of the record and the limit it is held against; loads and limit as felt, signed.
+/// What load, peak and limit of a rule are measured in.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Unit {
+    /// g₀, signed as felt.
+    StandardGravity,
+    /// m/s, negative backward.
+    MetreASecond,
+}
+
+/// A window of the record and the limit it is held against, both in the [`Unit`] of the rule.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Spell {
     /// Begin of the window, s.
@@ -49,17 +58,18 @@ pub struct Spell {
     pub to_s: f64,
     /// Length of the window, s (the filter's delay has no part in it).
     pub duration_s: f64,
-    /// Level at or beyond which the load stays, g.
-    pub load_g: f64,
-    /// Furthest load in the window, g.
-    pub peak_g: f64,
+    /// Level at or beyond which the load stays.
+    pub load: f64,
+    /// Furthest load in the window.
+    pub peak: f64,
     /// Instant of the furthest load, s.
     pub peak_time_s: f64,
-    /// Sample of the record (its delay in it) that holds the furthest load.
-    pub peak_sample: usize,
-    /// Limit for this duration, g.
-    pub limit_g: f64,
-    /// Load over limit, both counted from where the rule counts.
+    /// Where the furthest load stands in the record (its delay in it), in samples from 0.
+    pub peak_position: f64,
+    /// Limit for this duration; 0 for the speed of a train that should stop, or should not.
+    pub limit: f64,
+    /// Load over limit, both counted from where the rule counts; infinite where no number says how
+    /// far the rule is broken.
     pub utilisation: f64,
 }
 
@@ -98,7 +108,9 @@ pub struct Judgement {
     pub outcome: Outcome,
     /// Why it is not assessed, or what else the reader must know of the run.
     pub reason: Option<String>,
-    /// Largest utilisation; `None` where the record could not be evaluated.
+    /// What load, peak and limit are measured in.
+    pub unit: Unit,
+    /// Largest utilisation; `None` where the record could not be evaluated or the rule knows none.
     pub utilisation: Option<f64>,
     /// Uncertainty of the utilisation.
     pub band: f64,
@@ -110,15 +122,36 @@ pub struct Judgement {
     pub ignored: Vec<Ignored>,
 }
 
+/// How far a rule is used up.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) enum Measure {
+    /// By this much of its limit.
+    Utilisation(f64),
+    /// It is kept, and has no measure.
+    Kept,
+    /// It is broken, and has no measure.
+    Broken,
+}
+
 /// What a record makes of a rule, before the run's own state is weighed.
-#[derive(Debug, Default)]
+#[derive(Debug)]
 pub(super) struct Verdict {
+    pub(super) measure: Measure,
     pub(super) governing: Option<Spell>,
     pub(super) findings: Vec<Breach>,
     pub(super) ignored: Vec<Ignored>,
 }
 
 impl Judgement {
+    /// The outcome of one of the findings by itself.
+    pub fn outcome_of(&self, breach: &Breach) -> Outcome {
+        if breach.worst.utilisation - self.band > 1.0 {
+            Outcome::Outside
+        } else {
+            Outcome::TooCloseToCall
+        }
+    }
+
     pub(super) fn new(
         envelope: &input::Envelope,
         rule: &input::Rule,
@@ -130,34 +163,41 @@ impl Judgement {
             RunState::Complete => None,
             RunState::Incomplete(reason) => Some(reason.clone()),
         };
-        let (utilisation, reason, verdict) = match verdict {
-            Ok(v) => (
-                Some(v.governing.map_or(0.0, |s| s.utilisation)),
-                run_reason,
-                v,
-            ),
-            Err(reason) => (None, run_reason.or(Some(reason)), Verdict::default()),
+        let (measure, reason, verdict) = match verdict {
+            Ok(v) => (Some(v.measure), run_reason, Some(v)),
+            Err(reason) => (None, run_reason.or(Some(reason)), None),
         };
+        let (governing, findings, ignored) =
+            verdict.map_or_else(Default::default, |v| (v.governing, v.findings, v.ignored));
         Self {
             envelope: envelope.name.clone(),
             rule: rule.id.clone(),
-            outcome: outcome(utilisation, band, *run == RunState::Complete),
+            outcome: outcome(measure, band, *run == RunState::Complete),
             reason,
-            utilisation,
+            unit: match rule.kind {
+                RuleKind::Sustained(_) => Unit::StandardGravity,
+                RuleKind::Speed(_) => Unit::MetreASecond,
+            },
+            utilisation: match measure {
+                Some(Measure::Utilisation(u)) => Some(u),
+                _ => None,
+            },
             band,
-            governing: verdict.governing,
-            findings: verdict.findings,
-            ignored: verdict.ignored,
+            governing,
+            findings,
+            ignored,
         }
     }
 }
 
 /// `Inside` has to be earned: a number that compares with nothing never gives it.
-fn outcome(utilisation: Option<f64>, band: f64, complete: bool) -> Outcome {
-    match utilisation {
-        Some(u) if u - band > 1.0 => Outcome::Outside,
-        Some(u) if u + band > 1.0 => Outcome::TooCloseToCall,
-        Some(u) if u + band <= 1.0 && complete => Outcome::Inside,
+fn outcome(measure: Option<Measure>, band: f64, complete: bool) -> Outcome {
+    match measure {
+        Some(Measure::Broken) => Outcome::Outside,
+        Some(Measure::Kept) if complete => Outcome::Inside,
+        Some(Measure::Utilisation(u)) if u - band > 1.0 => Outcome::Outside,
+        Some(Measure::Utilisation(u)) if u + band > 1.0 => Outcome::TooCloseToCall,
+        Some(Measure::Utilisation(u)) if u + band <= 1.0 && complete => Outcome::Inside,
         _ => Outcome::NotAssessed,
     }
 }

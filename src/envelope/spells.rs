@@ -1,7 +1,8 @@
-//! The maximal windows of a piecewise-linear signal: for each sample's level, how long the signal stays at or above it.
+//! The maximal windows of a piecewise-linear signal: for each node's level, how long the signal stays at or above it.
 //!
 //! One pass with a stack of rising levels (the nearest-smaller-value method); windows come innermost first and,
-//! where they do not hold one another, in order of time. Positions count samples from 0 and may lie between them.
+//! where they do not hold one another, in order of time. Positions count samples of the record from 0 and may lie
+//! between them.
 
 use super::signal::Signal;
 
@@ -10,8 +11,8 @@ use super::signal::Signal;
 pub(super) struct Window {
     /// The level.
     pub(super) level: f64,
-    /// First and last sample inside.
-    pub(super) samples: (usize, usize),
+    /// First and last node inside.
+    pub(super) nodes: (usize, usize),
     /// Begin and end, interpolated.
     pub(super) ends: (f64, f64),
     /// How far begin and end move outwards for each unit the level falls; 0 at an end of the record.
@@ -35,18 +36,22 @@ impl Window {
     }
 
     fn new(signal: &Signal<'_>, level: f64, first: usize, last: usize) -> Self {
-        let outside_before = first.checked_sub(1).map(|i| signal.at(i));
-        let outside_after = (last + 1 < signal.len()).then(|| signal.at(last + 1));
-        let (reach_before, growth_before) = reach(signal.at(first), outside_before, level);
-        let (reach_after, growth_after) = reach(signal.at(last), outside_after, level);
+        let outside_before = first
+            .checked_sub(1)
+            .map(|node| Side::new(signal, first, node));
+        let outside_after = (last + 1 < signal.len()).then(|| Side::new(signal, last, last + 1));
+        let (reach_before, growth_before) = reach(outside_before, level);
+        let (reach_after, growth_after) = reach(outside_after, level);
+        let outside = |side: Option<Side>| side.map_or(f64::NEG_INFINITY, |s| s.outside);
         Self {
             level,
-            samples: (first, last),
-            ends: (first as f64 - reach_before, last as f64 + reach_after),
+            nodes: (first, last),
+            ends: (
+                signal.position(first) - reach_before,
+                signal.position(last) + reach_after,
+            ),
             growth: (growth_before, growth_after),
-            lower: outside_before
-                .unwrap_or(f64::NEG_INFINITY)
-                .max(outside_after.unwrap_or(f64::NEG_INFINITY)),
+            lower: outside(outside_before).max(outside(outside_after)),
         }
     }
 }
@@ -74,10 +79,29 @@ pub(super) fn each_window(signal: &Signal<'_>, least_level: f64, mut visit: impl
     }
 }
 
-/// How far a window reaches beyond its outermost sample, and how that grows as the level falls.
-fn reach(inside: f64, outside: Option<f64>, level: f64) -> (f64, f64) {
-    outside.map_or((0.0, 0.0), |outside| {
-        let per_unit = 1.0 / (inside - outside);
-        ((inside - level) * per_unit, per_unit)
+/// The two nodes between which a window ends.
+#[derive(Clone, Copy)]
+struct Side {
+    inside: f64,
+    outside: f64,
+    /// Distance of the nodes, samples.
+    gap: f64,
+}
+
+impl Side {
+    fn new(signal: &Signal<'_>, inside: usize, outside: usize) -> Self {
+        Self {
+            inside: signal.at(inside),
+            outside: signal.at(outside),
+            gap: (signal.position(outside) - signal.position(inside)).abs(),
+        }
+    }
+}
+
+/// How far a window reaches beyond its outermost node, and how that grows as the level falls.
+fn reach(side: Option<Side>, level: f64) -> (f64, f64) {
+    side.map_or((0.0, 0.0), |side| {
+        let per_unit = side.gap / (side.inside - side.outside);
+        ((side.inside - level) * per_unit, per_unit)
     })
 }

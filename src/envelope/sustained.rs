@@ -2,12 +2,13 @@
 //!
 //! With S(T) the largest level at or above which the piecewise-linear load stays for T, the utilisation is
 //! the largest S(T)/limit(T) over all T that are judged. Limits never rise with T, so that the
-//! largest value lies at a window at a sample's own level, or at a length where the curve bends or judging
+//! largest value lies at a window at the own level of a sample or border, or at a length where the curve bends or judging
 //! begins, or (`log-time`) at a stationary point between those: see [`LimitCurve::worst_between`].
 
 use super::curve::{Falling, LimitCurve};
 use super::findings::{Candidate, Union, Unions};
-use super::judgement::{Breach, Ignored, Spell, Verdict};
+use super::judgement::{Breach, Ignored, Measure, Spell, Verdict};
+use super::scope::Stretch;
 use super::signal::Signal;
 use super::spells::{Window, each_window};
 use crate::input::Sustained;
@@ -16,41 +17,85 @@ use crate::loads::Filtered;
 /// Room left for rounding where samples are passed over because they cannot matter.
 const SPARE: f64 = 1e-9;
 
-/// Holds a finite record against a rule; the reason where it cannot be.
-pub(super) fn assess(rule: &Sustained, record: &Filtered) -> Result<Verdict, String> {
-    let signal = Signal::new(&record.axes_g[rule.axis as usize], rule.demand);
-    let curve = LimitCurve::new(rule);
-    check_length(&signal, &curve, record.rate_hz)?;
-    let mut tally = Tally::new(&curve, record.rate_hz);
-    let least_level = curve.least() * assured(&signal, &curve, record.rate_hz).clamp(0.0, 1.0);
-    each_window(&signal, least_level * (1.0 - SPARE), |w| tally.visit(&w));
+/// Holds the stretches of a finite record against a rule whose limits are multiplied by a factor.
+///
+/// # Errors
+/// The reason where nothing can be judged: no stretch is as long as `ignore_below`.
+pub(super) fn assess(
+    rule: &Sustained,
+    factor: f64,
+    record: &Filtered,
+    stretches: &[Stretch],
+) -> Result<Verdict, String> {
+    let load_g = &record.axes_g[rule.axis as usize];
+    let curve = LimitCurve::new(rule, factor);
+    check_length(stretches, &curve, record.rate_hz)?;
     let clock = Clock {
         rate_hz: record.rate_hz,
         delay_s: record.delay_s,
     };
-    Ok(tally.verdict(&signal, clock))
+    let mut whole = Verdict {
+        measure: Measure::Utilisation(0.0),
+        governing: None,
+        findings: Vec::new(),
+        ignored: Vec::new(),
+    };
+    for &stretch in stretches {
+        let signal = Signal::new(load_g, rule.demand, stretch);
+        whole.append(assess_stretch(&signal, &curve, clock));
+    }
+    let used = whole.governing.map_or(0.0, |spell| spell.utilisation);
+    whole.measure = Measure::Utilisation(used);
+    Ok(whole)
 }
 
-fn check_length(signal: &Signal<'_>, curve: &LimitCurve, rate_hz: f64) -> Result<(), String> {
-    let Some(intervals) = signal.len().checked_sub(1) else {
+fn assess_stretch(signal: &Signal<'_>, curve: &LimitCurve, clock: Clock) -> Stretched {
+    let mut tally = Tally::new(curve, clock.rate_hz);
+    let least_level = curve.least() * assured(signal, curve, clock.rate_hz).clamp(0.0, 1.0);
+    each_window(signal, least_level * (1.0 - SPARE), |w| tally.visit(&w));
+    tally.result(signal, clock)
+}
+
+/// What one stretch gives.
+struct Stretched {
+    governing: Option<Spell>,
+    findings: Vec<Breach>,
+    ignored: Vec<Ignored>,
+}
+
+impl Verdict {
+    /// Adds a later stretch; of equal spells the earlier governs.
+    fn append(&mut self, later: Stretched) {
+        let used = |spell: Option<Spell>| spell.map_or(0.0, |s| s.utilisation);
+        if used(later.governing) > used(self.governing) {
+            self.governing = later.governing;
+        }
+        self.findings.extend(later.findings);
+        self.ignored.extend(later.ignored);
+    }
+}
+
+fn check_length(stretches: &[Stretch], curve: &LimitCurve, rate_hz: f64) -> Result<(), String> {
+    let lengths = stretches.iter().map(|s| (s.to - s.from) / rate_hz);
+    let Some(longest_s) = lengths.max_by(f64::total_cmp) else {
         return Err("the record holds no sample".to_owned());
     };
-    let length_s = intervals as f64 / rate_hz;
-    if curve.judges(length_s) {
+    if curve.judges(longest_s) {
         return Ok(());
     }
     Err(format!(
-        "the record of {length_s:.3} s is shorter than ignore_below, {} s",
+        "the record of {longest_s:.3} s is shorter than ignore_below, {} s",
         curve.ignore_below_s()
     ))
 }
 
 /// A utilisation that is reached for sure, found cheaply: the best of windows laid end to end.
 ///
-/// What cannot exceed it (nor 1) needs no closer look.
+/// What cannot exceed it (nor 1) needs no closer look. Between the first and the last node, which may
+/// be nearer to their neighbours, nodes are one sample apart.
 fn assured(signal: &Signal<'_>, curve: &LimitCurve, rate_hz: f64) -> f64 {
     let intervals = (curve.ignore_below_s() * rate_hz).ceil() as usize;
-    let level = (0..signal.len().saturating_sub(intervals))
+    let level = (1..signal.len().saturating_sub(intervals + 1))
         .step_by(intervals + 1)
         .map(|first| signal.least(first, first + intervals))
         .fold(f64::NEG_INFINITY, f64::max);
@@ -122,7 +167,7 @@ impl<'a> Tally<'a> {
         let level = window.level - drop;
         let limit = self.curve.limit(duration_s);
         let candidate = Candidate {
-            samples: window.samples,
+            nodes: window.nodes,
             ends: window.ends_lowered(drop),
             duration_s,
             level,
@@ -154,8 +199,8 @@ impl<'a> Tally<'a> {
         self.governing.map_or(0.0, |best| best.utilisation.min(1.0))
     }
 
-    fn verdict(&self, signal: &Signal<'_>, clock: Clock) -> Verdict {
-        Verdict {
+    fn result(&self, signal: &Signal<'_>, clock: Clock) -> Stretched {
+        Stretched {
             governing: self.governing.map(|best| clock.spell(signal, &best)),
             findings: (self.breaches.iter().map(|u| clock.breach(signal, u))).collect(),
             ignored: (self.ignored.iter().map(|u| clock.ignored(signal, u))).collect(),
@@ -176,16 +221,16 @@ impl Clock {
     }
 
     fn spell(&self, signal: &Signal<'_>, window: &Candidate) -> Spell {
-        let peak = signal.peak(window.samples.0, window.samples.1);
+        let peak = signal.peak(window.nodes.0, window.nodes.1);
         Spell {
             from_s: self.time_s(window.ends.0),
             to_s: self.time_s(window.ends.1),
             duration_s: window.duration_s,
-            load_g: signal.as_felt(window.level),
-            peak_g: signal.as_felt(signal.at(peak)),
-            peak_time_s: self.time_s(peak as f64),
-            peak_sample: peak,
-            limit_g: signal.as_felt(window.limit),
+            load: signal.as_felt(window.level),
+            peak: signal.as_felt(signal.at(peak)),
+            peak_time_s: self.time_s(signal.position(peak)),
+            peak_position: signal.position(peak),
+            limit: signal.as_felt(window.limit),
             utilisation: window.utilisation,
         }
     }
@@ -199,11 +244,11 @@ impl Clock {
     }
 
     fn ignored(&self, signal: &Signal<'_>, union: &Union) -> Ignored {
-        let peak = signal.peak(union.outer.samples.0, union.outer.samples.1);
+        let peak = signal.peak(union.outer.nodes.0, union.outer.nodes.1);
         Ignored {
             peak_g: signal.as_felt(signal.at(peak)),
             duration_s: union.outer.duration_s,
-            time_s: self.time_s(peak as f64),
+            time_s: self.time_s(signal.position(peak)),
             utilisation: union.worst.utilisation,
         }
     }

@@ -1,6 +1,7 @@
 //! An acceptance envelope, transcribed by the user.
 
 use crate::diagnostic::Place;
+use crate::input::SeatName;
 
 /// A set of rules from one document.
 #[derive(Clone, Debug)]
@@ -77,8 +78,64 @@ pub struct Rule {
     pub note: Option<String>,
     /// What it demands.
     pub kind: RuleKind,
+    /// Where, when and for whom it holds.
+    pub holds: Where,
+    /// What its limits are multiplied by.
+    pub scale: Option<Scale>,
     /// The whole entry.
     pub place: Place,
+}
+
+/// Where, when and for whom a rule holds.
+///
+/// Different keys are and-ed, the entries of one are or-ed; `None` restricts nothing, a list has
+/// at least one entry.
+#[derive(Clone, Debug, Default)]
+pub struct Where {
+    /// Stretches by station: the seat's own, for `speed` the leading axle's.
+    pub stations: Option<Vec<StationRange>>,
+    /// Stretches by name; each is on the track of at least one variant.
+    pub landmarks: Option<Vec<NameAt>>,
+    /// Names of scenarios of the operation.
+    pub scenarios: Option<Vec<NameAt>>,
+    /// Seats, each in the train of at least one variant.
+    pub seats: Option<Vec<SeatName>>,
+}
+
+/// A stretch of stations.
+#[derive(Clone, Debug)]
+pub struct StationRange {
+    /// First station, m.
+    pub from_m: f64,
+    /// Last station, m; below `from_m` across the seam of a closed track.
+    pub to_m: f64,
+    /// The whole entry.
+    pub place: Place,
+}
+
+/// A name and where it is written.
+#[derive(Clone, Debug)]
+pub struct NameAt {
+    /// The name.
+    pub name: String,
+    /// Where it is written.
+    pub place: Place,
+}
+
+/// What the limits of a rule are multiplied by, and why; a floor's 1 − value is.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Scale {
+    /// Above 0.
+    pub factor: f64,
+    /// In the user's words.
+    pub reason: String,
+}
+
+impl Rule {
+    /// What its limits are multiplied by: 1 where no scale is given.
+    pub fn factor(&self) -> f64 {
+        self.scale.as_ref().map_or(1.0, |scale| scale.factor)
+    }
 }
 
 /// What a rule demands.
@@ -86,6 +143,28 @@ pub struct Rule {
 pub enum RuleKind {
     /// A limit against duration.
     Sustained(Sustained),
+    /// Bounds on the speed of the train.
+    Speed(SpeedBounds),
+}
+
+/// Bounds on the speed of the train within a stretch; at least one.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct SpeedBounds {
+    /// Least speed, m/s, above 0; never beside [`Stop::Required`], and never scaled.
+    pub min_m_s: Option<f64>,
+    /// Largest speed, m/s, above 0.
+    pub max_m_s: Option<f64>,
+    /// Whether the train may or must come to rest.
+    pub stop: Option<Stop>,
+}
+
+/// Whether the train may or must come to rest.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Stop {
+    /// It must neither come to rest nor reverse.
+    Never,
+    /// It must come to rest.
+    Required,
 }
 
 /// A limit on one axis against the duration of an unbroken spell.

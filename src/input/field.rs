@@ -12,6 +12,8 @@ use std::ops::Range;
 use schemars::{JsonSchema, Schema, SchemaGenerator, json_schema};
 use serde::de::{Deserialize, Deserializer, Error, MapAccess, SeqAccess, Visitor};
 
+use crate::input::quantity::SPACE;
+
 /// Name under which the deserializer hands out a value with its place.
 pub(super) const FIELD: &str = "$field";
 /// Name under which the deserializer tells a scalar (`some`) from keys (`newtype`).
@@ -143,8 +145,11 @@ impl Visitor<'_> for TextVisitor {
     }
 }
 
-/// The same as a regular expression of JSON Schema: something that shows, and no control characters.
-const TEXT: &str = r"^[^\u0000-\u0008\u000e-\u001f\u007f-\u0084\u0086-\u009f]*[^\u0000- \u007f-\u00a0][^\u0000-\u0008\u000e-\u001f\u007f-\u0084\u0086-\u009f]*$";
+/// A character that shows, as a regular expression of JSON Schema.
+const SHOWN: &str =
+    r"[^\u0000-\u0020\u007f-\u00a0\u1680\u2000-\u200a\u2028\u2029\u202f\u205f\u3000]";
+/// A character that is allowed between two of those.
+const BETWEEN: &str = r"[^\u0000-\u0009\u000b-\u001f\u007f-\u009f]";
 
 impl JsonSchema for Text {
     fn inline_schema() -> bool {
@@ -158,7 +163,7 @@ impl JsonSchema for Text {
     fn json_schema(_: &mut SchemaGenerator) -> Schema {
         json_schema!({
             "type": ["string", "number", "boolean"],
-            "pattern": TEXT,
+            "pattern": format!("^{SPACE}*{SHOWN}({BETWEEN}*{SHOWN})?{SPACE}*$"),
             "patternErrorMessage": "expected some text without control characters"
         })
     }

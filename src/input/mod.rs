@@ -11,10 +11,12 @@ mod document;
 mod envelope;
 mod field;
 mod files;
+mod holds;
 mod keys;
 mod lower;
 mod operation;
 mod point_file;
+mod point_header;
 mod points;
 mod quantity;
 mod read;
@@ -35,8 +37,8 @@ mod schema_tests;
 mod tests;
 
 pub use envelope::{
-    Axis, Between, Demand, Document, Envelope, Filter, GravityTerm, Rule, RuleKind, Sign, Status,
-    Sustained,
+    Axis, Between, Demand, Document, Envelope, Filter, GravityTerm, NameAt, Rule, RuleKind, Scale,
+    Sign, SpeedBounds, StationRange, Status, Stop, Sustained, Where,
 };
 pub use operation::{
     Air, Device, Goal, Operation, Release, Resistance, Riders, Scenario, SeatName, Wind, Zone,

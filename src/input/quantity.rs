@@ -136,7 +136,8 @@ fn in_si<D: Dimension>(text: &str, number: &str, unit: &str) -> Result<f64, NoQu
     // The grammar above is a part of what `f64` reads; only the size can be wrong.
     let value: f64 = number.parse().map_err(|_| no_number::<D>(text))?;
     let si = found.to_si(value);
-    let lost = si == 0.0 && value == 0.0 && number.bytes().any(is_significant);
+    let mantissa = number.split(['e', 'E']).next().unwrap_or(number);
+    let lost = si == 0.0 && value == 0.0 && mantissa.bytes().any(is_significant);
     match si.is_finite() && !lost {
         true => Ok(si),
         false => Err(NoQuantity {
@@ -240,7 +241,8 @@ const NUMBER: &str = r"([0-9]+\.?[0-9]*|\.[0-9]+)([eE][+-]?[0-9]+)?";
 /// A number that is zero.
 const ZERO: &str = r"(0+\.?0*|\.0+)([eE][+-]?[0-9]+)?";
 /// White space as Rust trims it; the `\s` of editors differs in two characters.
-const SPACE: &str = r"[\t-\r \u0085\u00a0\u1680\u2000-\u200a\u2028\u2029\u202f\u205f\u3000]";
+pub(super) const SPACE: &str =
+    r"[\t-\r \u0085\u00a0\u1680\u2000-\u200a\u2028\u2029\u202f\u205f\u3000]";
 
 fn units_pattern<D: Dimension>() -> String {
     let names: Vec<String> = D::UNITS.iter().map(|unit| escaped(unit.name)).collect();

@@ -4,6 +4,7 @@ use crate::diagnostic::{Diagnostic, Place};
 use crate::input::decode::nearest;
 use crate::input::field::{At, Located, Text, WordOr, optional};
 use crate::input::files::Named;
+use crate::input::holds;
 use crate::input::lower::Lower;
 use crate::input::read::Reader;
 use crate::input::written::study::{StudyFile, VariantKeys};
@@ -69,6 +70,7 @@ pub(super) fn study(named: &Named, reader: &mut Reader) -> Option<Study> {
     if reader.found.is_empty() {
         check_rate(&study, plan.rate_place.as_ref(), &mut reader.found);
         check_seats(&study, &mut reader.found);
+        reader.found.extend(holds::check(&study));
         check_tracks(&study, &mut reader.found);
     }
     Some(study)

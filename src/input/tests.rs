@@ -333,14 +333,18 @@ fn an_envelope_holds_its_curves_as_written() {
             corner_hz: 5.0
         }
     );
-    let RuleKind::Sustained(down) = &envelope.rules[0].kind;
+    let RuleKind::Sustained(down) = &envelope.rules[0].kind else {
+        panic!("a sustained rule");
+    };
     assert_eq!(down.demand, Demand::Limit(Sign::Positive));
     assert_eq!(
         down.curve,
         [(0.2, 5.0), (1.0, 5.0), (4.0, 3.5), (12.0, 2.5)]
     );
     assert_eq!(down.ignore_below_s, 0.2);
-    let RuleKind::Sustained(least) = &envelope.rules[1].kind;
+    let RuleKind::Sustained(least) = &envelope.rules[1].kind else {
+        panic!("a sustained rule");
+    };
     assert_eq!(least.demand, Demand::Floor);
     assert_eq!(least.curve, [(0.2, 0.2), (1.0, 0.2), (1.0, 0.3)]);
 }

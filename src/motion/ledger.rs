@@ -1,7 +1,11 @@
 //! The books of a run: what energy it had, what each force took or gave.
 
 use super::equation::{Law, Model};
-use crate::numerics::quadrature::integrate;
+use crate::numerics::quadrature::integrate_step;
+use crate::numerics::root::bracketed;
+
+/// When an axle passes a break is found to this, s.
+const PASSING_TIME_S: f64 = 1e-10;
 
 /// Energy of a run, J; works are done on the train, losses negative.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -60,17 +64,32 @@ impl Books {
         (from_s, to_s): (f64, f64),
         state: impl Fn(f64) -> (f64, f64),
     ) {
-        let zero = Works::zero(self.works.zones.len());
         let power = |t: f64| {
             let (q, v) = state(t);
             powers(model, law, q, v)
         };
-        let done = integrate(from_s, to_s, zero, power);
-        let (q, v) = state(to_s);
-        let kinetic = model.terms(q, v).kinetic_j(v);
+        let (from_m, (to_m, v)) = (state(from_s).0, state(to_s));
+        // Where poses bend suddenly, so does the force of a zone that keeps a speed.
+        let passing = |&break_m: &f64| {
+            bracketed(from_s, to_s, PASSING_TIME_S, |t| {
+                (state(t).0 - break_m) * (to_m - from_m)
+            })
+        };
+        let breaks = match law.keeps_speed() {
+            true => model.ride.poses.breaks_between_m(from_m, to_m),
+            false => &[],
+        };
+        let mut cuts = breaks.iter().map(passing).collect::<Vec<_>>();
+        cuts.extend([from_s, to_s]);
+        cuts.sort_by(f64::total_cmp);
+        for ends in cuts.windows(2) {
+            let zero = Works::zero(self.works.zones.len());
+            let done = integrate_step(ends[0], ends[1], zero, power);
+            let sum = std::mem::replace(&mut self.works, Works::zero(0));
+            self.works = sum + done;
+        }
+        let kinetic = model.terms(to_m, v).kinetic_j(v);
         self.kinetic_j = (self.kinetic_j.0.min(kinetic), self.kinetic_j.1.max(kinetic));
-        let sum = std::mem::replace(&mut self.works, Works::zero(0));
-        self.works = sum + done;
     }
 
     /// Closes the books at a place and speed.

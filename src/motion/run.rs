@@ -30,7 +30,7 @@ pub struct Settings {
 impl Default for Settings {
     fn default() -> Self {
         Self {
-            tolerance: 1e-9,
+            tolerance: 1e-10,
             longest_step_s: 0.05,
         }
     }
@@ -131,7 +131,7 @@ impl<'a> Runner<'a> {
         let mut books = Books::open(&self.model, self.q, self.v);
         self.renew_windows();
         let mut end = if self.v == 0.0 {
-            self.from_rest()
+            self.leave_rest()
         } else {
             None
         };
@@ -253,7 +253,7 @@ impl<'a> Runner<'a> {
             }
             Event::Standstill => {
                 self.v = 0.0;
-                return self.from_rest();
+                return self.leave_rest();
             }
             Event::Speed(index) => self.turn(index),
             Event::Beyond => self.release_kept(),
@@ -262,7 +262,7 @@ impl<'a> Runner<'a> {
     }
 
     /// A train at rest is held, or sets off in the direction in which it is driven.
-    fn from_rest(&mut self) -> Option<RunEnd> {
+    fn leave_rest(&mut self) -> Option<RunEnd> {
         for window in &mut self.law.windows {
             if window.turning_speed_m_s().is_some() && matches!(window.device, Device::Clamp { .. })
             {
@@ -444,8 +444,8 @@ fn far_end_m(ride: &Ride<'_>, zone: &str) -> f64 {
     let train_m = ride.poses.layout().length_m();
     windows_near(zones, train_m, ride.poses.lap_m(), q)
         .iter()
-        .filter(|w| zones[w.zone].name == zone && w.to_m() > q)
-        .map(Window::to_m)
+        .filter(|w| zones[w.zone].name == zone && w.end_m() > q)
+        .map(Window::end_m)
         .fold(f64::INFINITY, f64::min)
 }
 

@@ -85,7 +85,7 @@ impl Window {
     }
 
     /// Last station, m.
-    pub(super) fn to_m(&self) -> f64 {
+    pub(super) fn end_m(&self) -> f64 {
         self.to_m
     }
 

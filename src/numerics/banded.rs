@@ -78,7 +78,42 @@ impl BandedFactors {
 
 /// values[row] −= factor values[other].
 fn subtract<const N: usize>(values: &mut [[f64; N]], row: usize, other: usize, factor: f64) {
-    for i in 0..N {
-        values[row][i] -= factor * values[other][i];
+    let from = values[other];
+    for (value, taken) in values[row].iter_mut().zip(from) {
+        *value -= factor * taken;
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// Against the dense solution (nalgebra's LU with pivoting) of a diagonally dominant band.
+    #[test]
+    fn exact_solution_of_a_band() {
+        let (size, half) = (12, 3);
+        let entry = |i: usize, j: usize| {
+            let spread = (i as f64 * 1.3 + j as f64 * 0.7).sin();
+            if i == j { 6.0 + spread } else { spread }
+        };
+        let mut band = Banded::zeros(size, half);
+        let mut dense = nalgebra::DMatrix::zeros(size, size);
+        for i in 0..size {
+            for j in i.saturating_sub(half)..size.min(i + half + 1) {
+                *band.entry_mut(i, j) = entry(i, j);
+                dense[(i, j)] = entry(i, j);
+            }
+        }
+        let mut values = (0..size)
+            .map(|i| [i as f64, 1.0 / (1.0 + i as f64)])
+            .collect::<Vec<_>>();
+        let right = nalgebra::DMatrix::from_fn(size, 2, |i, j| values[i][j]);
+        let expected = dense.lu().solve(&right).expect("not singular");
+        band.factored().solve(&mut values);
+        for i in 0..size {
+            for j in 0..2 {
+                assert!((values[i][j] - expected[(i, j)]).abs() < 1e-13);
+            }
+        }
     }
 }

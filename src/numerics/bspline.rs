@@ -209,8 +209,9 @@ fn taylor<const N: usize>(knots: &[f64], coefficients: &[[f64; N]], span: usize)
         factorial *= (order + 1) as f64;
         for i in (order + 1..=DEGREE).rev() {
             let width = knots[span + i - order] - knots[span + i - DEGREE];
-            for j in 0..N {
-                local[i][j] = degree as f64 * (local[i][j] - local[i - 1][j]) / width;
+            let before = local[i - 1];
+            for (value, before) in local[i].iter_mut().zip(before) {
+                *value = degree as f64 * (*value - before) / width;
             }
         }
     }
@@ -230,8 +231,9 @@ fn local_value<const N: usize>(
         for i in (r..=degree).rev() {
             let (left, right) = (knots[span + i - degree], knots[span + i + 1 - r]);
             let alpha = (x - left) / (right - left);
-            for j in 0..N {
-                d[i][j] = (1.0 - alpha) * d[i - 1][j] + alpha * d[i][j];
+            let before = d[i - 1];
+            for (value, before) in d[i].iter_mut().zip(before) {
+                *value = (1.0 - alpha) * before + alpha * *value;
             }
         }
     }

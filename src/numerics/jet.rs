@@ -183,3 +183,54 @@ impl Mul<Jet> for VectorJet {
         )
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// f, f′, f″ of sin² x/√(2 + x²) and of a composition, against central differences.
+    #[test]
+    fn exact_derivatives() {
+        let f = |x: Jet| {
+            let (sin, _) = x.sin_cos();
+            let two = Jet::new(2.0, 0.0, 0.0);
+            sin * sin * (two + x * x).inverse_sqrt() - x.scaled(0.3)
+        };
+        let value = |x: f64| f(Jet::new(x, 1.0, 0.0)).value;
+        let (x, h) = (0.8, 1e-4);
+        let jet = f(Jet::new(x, 1.0, 0.0));
+        let slope = (value(x + h) - value(x - h)) / (2.0 * h);
+        let bend = (value(x + h) - 2.0 * value(x) + value(x - h)) / (h * h);
+        assert!((jet.d1 - slope).abs() < 1e-8, "{jet:?} {slope}");
+        assert!((jet.d2 - bend).abs() < 1e-6, "{jet:?} {bend}");
+        // As a function of t with x = t³ at t = 0.9: d/dt = 3t² d/dx.
+        let t = 0.9f64;
+        let cube = f(Jet::new(t.powi(3), 3.0 * t * t, 6.0 * t));
+        let by_t = |t: f64| value(t.powi(3));
+        let slope = (by_t(t + h) - by_t(t - h)) / (2.0 * h);
+        let bend = (by_t(t + h) - 2.0 * by_t(t) + by_t(t - h)) / (h * h);
+        assert!((cube.d1 - slope).abs() < 1e-7, "{cube:?} {slope}");
+        assert!((cube.d2 - bend).abs() < 1e-5, "{cube:?} {bend}");
+    }
+
+    /// A unit vector on a helix (a = 2, b = 1): tangent of constant length, at right angles to its derivative,
+    /// which is κ = a/(a² + b²) long by arc length (do Carmo, sec. 1-5).
+    #[test]
+    fn exact_vectors() {
+        let t = Jet::new(0.4, 1.0, 0.0);
+        let (sin, cos) = t.sin_cos();
+        let velocity =
+            VectorJet::from_components(-sin.scaled(2.0), cos.scaled(2.0), Jet::new(1.0, 0.0, 0.0));
+        let tangent = velocity.normalized();
+        let by_arc = tangent.along(Jet::new(0.4, 1.0 / 5f64.sqrt(), 0.0));
+        assert!((by_arc.d1.norm() - 2.0 / 5.0).abs() < 1e-15);
+        assert!(tangent.dot(tangent).d1.abs() < 1e-15 && tangent.dot(tangent).d2.abs() < 1e-15);
+        let across = VectorJet::new(Vector3::x(), Vector3::zeros(), Vector3::zeros());
+        let across = across.orthogonal_to(tangent).normalized();
+        let zero = across.dot(tangent);
+        assert!(zero.value.abs() + zero.d1.abs() + zero.d2.abs() < 1e-14);
+        let binormal = tangent.cross(across);
+        assert!((binormal.dot(binormal).value - 1.0).abs() < 1e-14);
+        assert!(binormal.dot(binormal).d2.abs() < 1e-14);
+    }
+}

@@ -103,22 +103,73 @@ impl<const N: usize> Quintic<N> {
     }
 
     /// Values and two derivatives at `d` beyond the left node of an interval.
+    ///
+    /// Horner's scheme for a polynomial and its derivatives, all `N` functions side by side.
     pub fn jets(&self, interval: usize, d: f64) -> Jets<N> {
         let c = &self.coefficients[interval];
-        let mut out = [[0.0; N]; 3];
-        for i in 0..N {
-            let (c3, c4, c5) = (c[3][i], c[4][i], c[5][i]);
-            out[0][i] = c[0][i] + d * (c[1][i] + d * (c[2][i] + d * (c3 + d * (c4 + d * c5))));
-            out[1][i] =
-                c[1][i] + d * (2.0 * c[2][i] + d * (3.0 * c3 + d * (4.0 * c4 + d * 5.0 * c5)));
-            out[2][i] = 2.0 * c[2][i] + d * (6.0 * c3 + d * (12.0 * c4 + d * 20.0 * c5));
+        let (mut value, mut first, mut half_second) = (c[5], [0.0; N], [0.0; N]);
+        for row in c[..5].iter().rev() {
+            for i in 0..N {
+                half_second[i] = half_second[i] * d + first[i];
+                first[i] = first[i] * d + value[i];
+                value[i] = value[i] * d + row[i];
+            }
         }
-        out
+        [value, first, half_second.map(|h| 2.0 * h)]
     }
 
     /// Third derivatives at `d` beyond the left node of an interval.
     pub fn third(&self, interval: usize, d: f64) -> [f64; N] {
         let c = &self.coefficients[interval];
         std::array::from_fn(|i| 6.0 * c[3][i] + d * (24.0 * c[4][i] + d * 60.0 * c[5][i]))
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// f and its first three derivatives for f = x⁵ − 2x³ + x − 1.
+    fn polynomial(x: f64) -> [f64; 4] {
+        [
+            x.powi(5) - 2.0 * x.powi(3) + x - 1.0,
+            5.0 * x.powi(4) - 6.0 * x * x + 1.0,
+            20.0 * x.powi(3) - 12.0 * x,
+            60.0 * x * x - 12.0,
+        ]
+    }
+
+    /// Two-point Hermite interpolation repeats polynomials of degree 5 (Davis, sec. 2.5).
+    #[test]
+    fn exact_polynomial_of_degree_five() {
+        let jets = |x: f64| {
+            let [f, d, a, _] = polynomial(x);
+            [[f], [d], [a]]
+        };
+        let mut quintic = Quintic::new();
+        quintic.push_hermite(0.7, &jets(0.4), &jets(1.1));
+        for d in [0.0, 0.2, 0.35, 0.7] {
+            let (found, exact) = (quintic.jets(0, d), polynomial(0.4 + d));
+            for k in 0..3 {
+                assert!((found[k][0] - exact[k]).abs() < 1e-12);
+            }
+            assert!((quintic.third(0, d)[0] - exact[3]).abs() < 1e-11);
+        }
+    }
+
+    /// The bucketed search finds what a plain one finds, nodes and places beyond the ends included.
+    #[test]
+    fn exact_location_on_uneven_nodes() {
+        let nodes = vec![-3.0, -2.999, -1.0, 0.0, 1e-3, 2e-3, 5.0, 5.5, 40.0];
+        let grid = Grid::new(nodes.clone());
+        let mut places = nodes.clone();
+        places.extend((0..500).map(|i| -5.0 + 0.1 * f64::from(i)));
+        for x in places {
+            let last = nodes.len() - 2;
+            let plain = nodes.iter().rposition(|&n| n <= x).unwrap_or(0).min(last);
+            let (interval, offset) = grid.locate(x);
+            assert_eq!(interval, plain, "at {x}");
+            assert_eq!(offset, x - nodes[plain]);
+        }
     }
 }

@@ -1,13 +1,16 @@
 //! An assessment as machines read it: fixed keys in a fixed order, null for what does not exist.
+//!
+//! Load, peak and limit are in g; for a rule about speed in m/s. Such a rule stands in every seat alike, its
+//! stations are the leading axle's, and its findings come once a case, with car, seat, duration and parts null.
 
 use serde_json::{Map, Value, json};
 
 use super::number::{json as number, json_or_null};
 use super::{end_key, outcome_key};
-use crate::envelope::{Ignored, Spell};
+use crate::envelope::{Ignored, Spell, Unit};
 use crate::motion::Ledger;
 use crate::study::{
-    Assessment, Case, Change, Extremes, Finding, Remedy, RuleResult, Run, SeatResult, Why,
+    Assessment, Case, Change, Extremes, Finding, Parts, Remedy, RuleResult, Run, SeatResult, Why,
 };
 
 /// The whole assessment, indented, with a line end.
@@ -87,10 +90,10 @@ fn rule(rule: &RuleResult) -> Value {
         "reason": judgement.reason,
         "utilisation": json_or_null(judgement.utilisation),
         "band": number(judgement.band),
-        "load": of(|s| s.load_g),
-        "peak": of(|s| s.peak_g),
-        "limit": of(|s| s.limit_g),
-        "duration_s": of(|s| s.duration_s),
+        "load": of(|s| s.load),
+        "peak": of(|s| s.peak),
+        "limit": of(|s| s.limit),
+        "duration_s": json_or_null(judgement.governing.and_then(|s| duration(judgement.unit, &s))),
         "station_m": json_or_null(rule.station_m),
         "time_s": of(|s| s.peak_time_s),
         "ignored": ignored.map(|(i, station_m)| ignored_load(i, *station_m)).collect::<Vec<_>>(),
@@ -110,12 +113,12 @@ fn finding(finding: &Finding) -> Value {
     json!({
         "variant": finding.variant,
         "scenario": finding.scenario,
-        "car": finding.car,
-        "seat": finding.seat,
+        "car": finding.rider.as_ref().map(|rider| rider.car),
+        "seat": finding.rider.as_ref().map(|rider| &rider.seat),
         "envelope": finding.envelope,
         "rule": finding.rule,
         "outcome": outcome_key(finding.outcome),
-        "peak": number(worst.peak_g),
+        "peak": number(worst.peak),
         "time_s": number(worst.peak_time_s),
         "station_m": number(finding.station_m),
         "train_station_m": number(finding.train_station_m),
@@ -124,9 +127,9 @@ fn finding(finding: &Finding) -> Value {
         "from_s": number(finding.breach.from_s),
         "to_s": number(finding.breach.to_s),
         "landmark": finding.landmark,
-        "load": number(worst.load_g),
-        "limit": number(worst.limit_g),
-        "duration_s": number(worst.duration_s),
+        "load": number(worst.load),
+        "limit": number(worst.limit),
+        "duration_s": json_or_null(duration(finding.unit, worst)),
         "utilisation": number(worst.utilisation),
         "band": number(finding.band),
         "why": why(&finding.why),
@@ -134,17 +137,23 @@ fn finding(finding: &Finding) -> Value {
     })
 }
 
+/// Limits on speed know no duration.
+fn duration(unit: Unit, spell: &Spell) -> Option<f64> {
+    (unit == Unit::StandardGravity).then_some(spell.duration_s)
+}
+
 fn why(why: &Why) -> Value {
+    let part = |of: fn(&Parts) -> f64| json_or_null(why.parts_g.as_ref().map(of));
     json!({
         "speed_m_s": number(why.speed_m_s),
         "radius_m": json_or_null(why.radius_m),
         "grade_deg": number(why.grade_rad.to_degrees()),
         "bank_left_deg": json_or_null(why.bank_left_rad.map(f64::to_degrees)),
         "parts_g": {
-            "gravity": number(why.parts_g.gravity),
-            "normal": number(why.parts_g.normal),
-            "tangential": number(why.parts_g.tangential),
-            "offset": number(why.parts_g.offset),
+            "gravity": part(|p| p.gravity),
+            "normal": part(|p| p.normal),
+            "tangential": part(|p| p.tangential),
+            "offset": part(|p| p.offset),
         },
     })
 }

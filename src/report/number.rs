@@ -2,6 +2,8 @@
 
 use serde_json::{Number, Value};
 
+use crate::envelope::Unit;
+
 /// Units that people read; files and machines keep to SI.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
 pub enum Units {
@@ -48,8 +50,11 @@ pub(super) fn load(value_g: f64) -> String {
     format!("{value_g:+.2} g")
 }
 
-/// A utilisation, with as many digits as it takes to show on which side of 1 it lies.
+/// A utilisation, with as many digits as it takes to show on which side of 1 it lies; `-` where there is none.
 pub(super) fn utilisation(value: f64) -> String {
+    if !value.is_finite() {
+        return "-".to_owned();
+    }
     (3..=12)
         .map(|digits| format!("{value:.digits$}"))
         .find(|text| value == 1.0 || text.parse::<f64>().is_ok_and(|shown| shown != 1.0))
@@ -75,6 +80,14 @@ impl Units {
         match self {
             Self::Si => format!("{from_m:.1}..{to_m:.1} m"),
             Self::Us => format!("{:.1}..{:.1} ft", from_m / FOOT_M, to_m / FOOT_M),
+        }
+    }
+
+    /// What a rule limits.
+    pub(super) fn measured(self, unit: Unit, value: f64) -> String {
+        match unit {
+            Unit::StandardGravity => load(value),
+            Unit::MetreASecond => self.speed(value),
         }
     }
 

@@ -78,15 +78,28 @@ impl Fitted {
         self.length_m
     }
 
-    /// Position and attitude at a station.
-    pub(super) fn at(&self, station_m: f64) -> SpinePoint {
+    fn parameter_at(&self, station_m: f64) -> f64 {
         let s = if self.closed {
             station_m.rem_euclid(self.length_m)
         } else {
             station_m
         };
         let (interval, d) = self.stations.locate(s);
-        let p = self.parameters.jets(interval, d)[0][0];
+        self.parameters.jets(interval, d)[0][0]
+    }
+
+    /// Position, m, and tangent at a station.
+    pub(super) fn path_at(&self, station_m: f64) -> (Vector3<f64>, Vector3<f64>) {
+        let [r, r1, ..] = self
+            .path
+            .at(self.parameter_at(station_m))
+            .map(Vector3::from);
+        (r, r1.normalize())
+    }
+
+    /// Position and attitude at a station.
+    pub(super) fn at(&self, station_m: f64) -> SpinePoint {
+        let p = self.parameter_at(station_m);
         let [r, r1, r2, r3] = self.path.at(p).map(Vector3::from);
         let by_arc = ByArc::new(r1, r2, r3);
         let tangent = by_arc.tangent(r1, r2, r3);
@@ -170,7 +183,7 @@ impl Attitude {
             Self::Up(vector_curve) | Self::Left(vector_curve) => {
                 let across = vector(vector_curve, p).value;
                 let sine = across.cross(&tangent).norm() / across.norm();
-                (!(sine > LEAST_ACROSS)).then(|| {
+                (sine.is_nan() || sine <= LEAST_ACROSS).then(|| {
                     let found = format!(
                         "the fitted frame lies {:.1} deg from the track's direction, expected about 90 deg,",
                         sine.asin().to_degrees()
@@ -334,7 +347,7 @@ fn check_turns(table: &PointTable, centre: &[Vector3<f64>]) -> Result<(), Vec<Di
     };
     let wrong = corners
         .map(|i| (i, turn_deg(&i)))
-        .filter(|(_, turn)| !(*turn <= LARGEST_TURN_DEG))
+        .filter(|(_, turn)| turn.is_nan() || *turn > LARGEST_TURN_DEG)
         .map(|(i, turn)| {
             Diagnostic::error(format!(
                 "the track turns by {turn:.1} deg between the chords before and after this point, \

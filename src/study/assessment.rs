@@ -1,6 +1,6 @@
 //! What an assessment holds, ready to be written down; stations of seats are wrapped on a closed track.
 
-use crate::envelope::{Breach, Judgement, Outcome};
+use crate::envelope::{Breach, Judgement, Outcome, Unit};
 use crate::input::InputFile;
 use crate::motion::{Ledger, Reversal, RunEnd};
 
@@ -15,7 +15,7 @@ pub struct Assessment {
     pub inputs: Vec<InputFile>,
     /// In file order: variants, and scenarios within each.
     pub cases: Vec<Case>,
-    /// In order of case, car, seat, envelope, rule and time.
+    /// In order of case, car, seat, envelope, rule and time; those about the speed of the train lead their case.
     pub findings: Vec<Finding>,
 }
 
@@ -76,7 +76,8 @@ pub struct SeatResult {
     pub seat: String,
     /// Unfiltered felt load by axis (x, y, z), g, at the seat's own stations.
     pub felt_g: [Option<Extremes>; 3],
-    /// In order of envelope and rule.
+    /// In order of envelope and rule: the rules that are about this seat under this scenario, and those
+    /// about the speed of the train, which are the same in every seat.
     pub rules: Vec<RuleResult>,
 }
 
@@ -85,7 +86,7 @@ pub struct SeatResult {
 pub struct RuleResult {
     /// The judgement.
     pub judgement: Judgement,
-    /// Station of the seat at the governing window's peak, m.
+    /// Station of the seat (for a rule about speed, of the leading axle) at the governing window's peak, m.
     pub station_m: Option<f64>,
     /// Stations of the seat at the peaks of what was ignored, m, in the same order.
     pub ignored_station_m: Vec<f64>,
@@ -98,29 +99,29 @@ pub struct Finding {
     pub variant: String,
     /// Name of the scenario.
     pub scenario: String,
-    /// From 1 at the front.
-    pub car: usize,
-    /// The seat's name in its car.
-    pub seat: String,
+    /// Who feels it; `None` for the speed of the train, which is found once a case.
+    pub rider: Option<Rider>,
     /// Name of the envelope.
     pub envelope: String,
     /// Id of the rule.
     pub rule: String,
     /// `Outside`, or `TooCloseToCall`.
     pub outcome: Outcome,
+    /// What load, peak and limit are measured in.
+    pub unit: Unit,
     /// When, how long and how much.
     pub breach: Breach,
     /// Uncertainty of the utilisation.
     pub band: f64,
-    /// Station of the seat at the worst window's peak, m.
+    /// Station of the seat (of the leading axle where there is none) at the worst window's peak, m.
     pub station_m: f64,
     /// Station of the leading axle at the same time, m (not wrapped).
     pub train_station_m: f64,
-    /// Station of the seat where the breach begins, m.
+    /// Station of the same where the breach begins, m.
     pub from_station_m: f64,
-    /// Station of the seat where it ends, m.
+    /// Station of the same where it ends, m.
     pub to_station_m: f64,
-    /// Shortest named stretch that holds the seat's station.
+    /// Shortest named stretch that holds that station.
     pub landmark: Option<String>,
     /// What makes the load what it is.
     pub why: Why,
@@ -128,7 +129,16 @@ pub struct Finding {
     pub remedies: Vec<Remedy>,
 }
 
-/// The state of things at a finding's worst instant; spine quantities at the seat's station.
+/// A place on the train.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Rider {
+    /// From 1 at the front.
+    pub car: usize,
+    /// The seat's name in its car.
+    pub seat: String,
+}
+
+/// The state of things at a finding's worst instant; spine quantities at the finding's station.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Why {
     /// Speed of the leading axle, m/s.
@@ -139,8 +149,8 @@ pub struct Why {
     pub grade_rad: f64,
     /// Bank to the left, rad, unless the track stands on end.
     pub bank_left_rad: Option<f64>,
-    /// The load in parts.
-    pub parts_g: Parts,
+    /// The load in parts, where it is one.
+    pub parts_g: Option<Parts>,
 }
 
 /// Parts of a filtered load along the rule's axis, g; they sum to it.
@@ -176,6 +186,15 @@ pub enum Change {
     Radius,
     /// Bank to the left, rad.
     Bank,
+}
+
+impl Case {
+    /// Worst over all rules of all seats; a case that no rule is about has shown nothing.
+    pub fn outcome(&self) -> Outcome {
+        let rules = self.seats.iter().flat_map(|seat| &seat.rules);
+        let outcomes = rules.map(|rule| rule.judgement.outcome);
+        outcomes.max().unwrap_or(Outcome::NotAssessed)
+    }
 }
 
 impl Extremes {

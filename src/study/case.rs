@@ -1,8 +1,10 @@
 //! One case: run the train, work out what each seat feels, hold it against the envelopes, keep the reduced result.
 
 use super::assessment::{Case, Extremes, Finding, RuleResult, Run, SeatResult};
+use super::holds::{for_seat, in_scenario};
 use super::plan::{CaseId, Design, Plan};
 use super::seat::SeatView;
+use super::train_speed::TrainRecord;
 use crate::envelope::{self, RunState};
 use crate::input::GravityTerm;
 use crate::loads::{self, CarLoads};
@@ -52,6 +54,7 @@ fn summary(history: &History<'_>, samples: &Samples) -> Run {
 /// Every rule of every seat, not assessed.
 fn unmade_seats(plan: &Plan<'_>, id: CaseId, reason: &str) -> Vec<SeatResult> {
     let envelopes = &plan.study.envelopes;
+    let (_, scenario) = plan.names(id);
     let cars = plan.variants[id.variant].seats.iter().enumerate();
     cars.flat_map(|(car, seats)| seats.iter().map(move |seat| (car, seat)))
         .map(|(car, seat)| SeatResult {
@@ -60,7 +63,9 @@ fn unmade_seats(plan: &Plan<'_>, id: CaseId, reason: &str) -> Vec<SeatResult> {
             felt_g: [None; 3],
             rules: envelopes
                 .iter()
-                .flat_map(|e| envelope::not_assessed(e, reason))
+                .flat_map(|e| e.rules.iter().map(move |rule| (e, rule)))
+                .filter(|(_, rule)| in_scenario(rule, scenario) && for_seat(rule, car, seat))
+                .map(|(e, rule)| envelope::not_assessed(e, rule, reason))
                 .map(|judgement| RuleResult {
                     judgement,
                     station_m: None,
@@ -126,23 +131,45 @@ pub(super) struct Judging<'a> {
     pub(super) design: &'a Design<'a>,
     pub(super) samples: Samples,
     pub(super) state: RunState,
+    pub(super) train: TrainRecord,
+    /// By envelope and rule: what the rules about the speed of the train give, whatever the seat.
+    pub(super) of_train: Vec<Vec<Option<RuleResult>>>,
 }
 
 impl<'a> Judging<'a> {
     fn new(plan: &'a Plan<'a>, id: CaseId, history: &History<'_>) -> Self {
         let samples = history.samples(plan.study.rate_hz);
-        Self {
+        let mut judging = Self {
             plan,
             id,
             design: &plan.variants[id.variant],
             state: run_state(history, &samples),
+            train: TrainRecord::new(history, &samples, &plan.study.operation.goal),
+            of_train: Vec::new(),
             samples,
-        }
+        };
+        judging.of_train = judging.judge_train();
+        judging
+    }
+
+    fn judge_train(&self) -> Vec<Vec<Option<RuleResult>>> {
+        let of_rule = |envelope: &_, rule: &_| {
+            let judgement = self.judge_speed(envelope, rule)?;
+            Some(self.speed_result(judgement))
+        };
+        let envelopes = self.plan.study.envelopes.iter();
+        let of_envelope =
+            |e: &crate::input::Envelope| e.rules.iter().map(|r| of_rule(e, r)).collect();
+        envelopes.map(of_envelope).collect()
     }
 
     /// One car after the other, so that the loads of one car at most are held.
     fn judge_all(&self) -> (Vec<SeatResult>, Vec<Finding>) {
-        let (mut seats, mut findings) = (Vec::new(), Vec::new());
+        let of_train = self.of_train.iter().flatten().flatten();
+        let mut findings: Vec<Finding> = of_train
+            .flat_map(|rule| self.speed_findings(&rule.judgement))
+            .collect();
+        let mut seats = Vec::new();
         for car in 0..self.design.seats.len() {
             self.judge_car(car, &mut seats, &mut findings);
         }

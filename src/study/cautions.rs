@@ -1,7 +1,8 @@
 //! What a reader has to know before using a result.
 
+use super::holds::{for_seat, in_scenario};
 use super::plan::{Design, Plan};
-use crate::input::{Fit, Status, TrackSource};
+use crate::input::{Envelope, Fit, Rule, RuleKind, Status, TrackSource};
 
 /// In a fixed order, each once.
 pub(super) fn of(plan: &Plan<'_>) -> Vec<String> {
@@ -14,6 +15,13 @@ pub(super) fn of(plan: &Plan<'_>) -> Vec<String> {
             .to_owned(),
     ];
     cautions.extend(illustrative(plan));
+    cautions.extend(rules(plan).filter_map(|(envelope, rule)| scaled(envelope, rule)));
+    for design in &plan.variants {
+        cautions.extend(
+            rules(plan).filter_map(|(envelope, rule)| about_nothing(plan, design, envelope, rule)),
+        );
+    }
+    cautions.extend(without_rules(plan));
     for design in &plan.variants {
         let of_variant = [exact_points(design), no_inertia(design)];
         for caution in of_variant.into_iter().flatten() {
@@ -36,6 +44,68 @@ fn illustrative(plan: &Plan<'_>) -> Vec<String> {
             )
         })
         .collect()
+}
+
+fn rules<'a>(plan: &Plan<'a>) -> impl Iterator<Item = (&'a Envelope, &'a Rule)> {
+    let envelopes = plan.study.envelopes.iter();
+    envelopes.flat_map(|e| e.rules.iter().map(move |rule| (e, rule)))
+}
+
+fn scaled(envelope: &Envelope, rule: &Rule) -> Option<String> {
+    let scale = rule.scale.as_ref()?;
+    Some(format!(
+        "The limits of the rule `{}` of the envelope `{}` are multiplied by {}: {}.",
+        rule.id,
+        envelope.name,
+        scale.factor,
+        scale.reason.trim_end_matches('.')
+    ))
+}
+
+/// A rule that says nothing must not pass for one that is kept.
+fn about_nothing(
+    plan: &Plan<'_>,
+    design: &Design<'_>,
+    envelope: &Envelope,
+    rule: &Rule,
+) -> Option<String> {
+    let of_train = matches!(rule.kind, RuleKind::Speed(_));
+    let mut cars = design.seats.iter().enumerate();
+    let seat = cars.any(|(car, seats)| {
+        seats
+            .iter()
+            .any(|seat| of_train || for_seat(rule, car, seat))
+    });
+    let scenario = plan.scenarios.iter().any(|s| in_scenario(rule, &s.name));
+    (!(seat && scenario)).then(|| {
+        format!(
+            "The rule `{}` of the envelope `{}` is not assessed in the variant `{}`: it is about none \
+             of the scenarios and seats that were taken.",
+            rule.id, envelope.name, design.variant.name
+        )
+    })
+}
+
+/// How many seats, counted once a case, no rule is about.
+fn without_rules(plan: &Plan<'_>) -> Option<String> {
+    let (mut all, mut bare) = (0, 0);
+    for design in &plan.variants {
+        for scenario in &plan.scenarios {
+            let mut here = rules(plan).map(|(_, rule)| rule).collect::<Vec<_>>();
+            here.retain(|rule| in_scenario(rule, &scenario.name));
+            for (car, seats) in design.seats.iter().enumerate() {
+                for seat in seats {
+                    all += 1;
+                    bare += usize::from(!here.iter().any(|rule| for_seat(rule, car, seat)));
+                }
+            }
+        }
+    }
+    (bare > 0).then(|| {
+        format!(
+            "No rule is about {bare} of the {all} seats of all cases: what is felt there is not assessed."
+        )
+    })
 }
 
 fn exact_points(design: &Design<'_>) -> Option<String> {

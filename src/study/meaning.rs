@@ -7,7 +7,7 @@ use std::collections::BTreeSet;
 use super::plan::{Design, Plan};
 use super::selection::suggest;
 use crate::diagnostic::Diagnostic;
-use crate::input::{Goal, Scenario, Zone};
+use crate::input::{Goal, Rule, Scenario, Zone};
 
 /// All mistakes of a plan.
 pub(super) fn check(plan: &Plan<'_>) -> Vec<Diagnostic> {
@@ -18,6 +18,9 @@ pub(super) fn check(plan: &Plan<'_>) -> Vec<Diagnostic> {
     }
     for design in &plan.variants {
         mistakes.extend(check_goal(goal, design));
+        let envelopes = plan.study.envelopes.iter();
+        let rules = envelopes.flat_map(|envelope| &envelope.rules);
+        mistakes.extend(rules.flat_map(|rule| check_stations(rule, design)));
         for &scenario in &plan.scenarios {
             let zones = scenario.zones.iter();
             mistakes.extend(zones.filter_map(|zone| check_zone(zone, design)));
@@ -36,6 +39,23 @@ pub(super) fn without_repeats(mistakes: Vec<Diagnostic>) -> Vec<Diagnostic> {
         seen.insert((place, d.message.clone()))
     };
     mistakes.into_iter().filter(|d| first_time(d)).collect()
+}
+
+/// Beyond the seam of a closed track a station would mean another one; beyond an open end it is never reached.
+fn check_stations(rule: &Rule, design: &Design<'_>) -> Vec<Diagnostic> {
+    let length_m = design.spine.length_m();
+    let ranges = rule.holds.stations.iter().flatten();
+    let beyond = ranges.filter(|r| design.spine.is_closed() && r.from_m.max(r.to_m) > length_m);
+    let mistake = |range: &crate::input::StationRange| {
+        Diagnostic::error(format!(
+            "the stretch from {} m to {} m does not lie on the closed track of variant `{}`, \
+             expected stations within 0 m..{length_m:.3} m",
+            range.from_m, range.to_m, design.variant.name
+        ))
+        .at(&range.place)
+        .hint("a stretch across the seam ends at a lower station than it begins")
+    };
+    beyond.map(mistake).collect()
 }
 
 fn check_finish(goal: &Goal, scenario: &Scenario) -> Option<Diagnostic> {

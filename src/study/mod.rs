@@ -7,16 +7,18 @@
 mod assessment;
 mod case;
 mod cautions;
+mod holds;
 mod meaning;
 mod plan;
 mod record;
 mod seat;
 mod selection;
+mod train_speed;
 mod why;
 
 pub use assessment::{
-    Assessment, At, Case, Change, Extremes, Finding, Parts, Remedy, RuleResult, Run, SeatResult,
-    Why,
+    Assessment, At, Case, Change, Extremes, Finding, Parts, Remedy, Rider, RuleResult, Run,
+    SeatResult, Why,
 };
 pub use plan::{CaseId, Plan};
 pub use record::{CaseRecord, SeatRecord};

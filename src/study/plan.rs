@@ -4,7 +4,7 @@ use std::sync::atomic::{AtomicUsize, Ordering};
 
 use rayon::prelude::*;
 
-use super::assessment::Assessment;
+use super::assessment::{Assessment, Case};
 use super::selection::{Selection, keeps, unknown_names};
 use super::{Progress, case, cautions, meaning};
 use crate::diagnostic::Diagnostic;
@@ -112,17 +112,16 @@ impl<'a> Plan<'a> {
             })
             .collect();
         let (cases, findings): (Vec<_>, Vec<_>) = results.into_iter().unzip();
-        let outcomes = cases.iter().flat_map(|c| {
-            let seats = c.seats.iter();
-            seats.flat_map(|s| s.rules.iter().map(|r| r.judgement.outcome))
-        });
+        let findings = findings.concat();
+        // Findings about the train count where there is no seat to show its rules.
+        let outcomes = findings.iter().map(|finding| finding.outcome);
+        let outcomes = outcomes.chain(cases.iter().map(Case::outcome));
         Assessment {
-            // A study of no seat has shown nothing.
             outcome: outcomes.max().unwrap_or(Outcome::NotAssessed),
             cautions: cautions::of(self),
             inputs: self.study.files.clone(),
             cases,
-            findings: findings.concat(),
+            findings,
         }
     }
 

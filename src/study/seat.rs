@@ -1,11 +1,12 @@
 //! One seat of one case: its loads held against the envelopes, and what was found put in its place on the ride.
 
-use super::assessment::{Extremes, Finding, RuleResult, SeatResult};
+use super::assessment::{Extremes, Finding, Rider, RuleResult, SeatResult};
 use super::case::Judging;
+use super::holds::{Way, for_seat, in_scenario};
 use super::plan::View;
 use super::why::PartSeries;
-use crate::envelope::{self, Breach, Judgement, Outcome};
-use crate::input::{Axis, Envelope, GravityTerm, RuleKind, Seat};
+use crate::envelope::{self, Breach, Judgement, Scope};
+use crate::input::{Axis, Envelope, GravityTerm, Rule, RuleKind, Seat};
 use crate::loads::{self, AxesG, Filtered};
 
 /// One seat of one case.
@@ -30,13 +31,49 @@ impl SeatView<'_> {
             let mut parts = PartsOfView::new(self, view, &record);
             for &index in &view.envelopes {
                 let envelope = &envelopes[index];
-                let judgements = envelope::judge(envelope, &record, &self.judging.state);
-                let findings = self.findings(envelope, &judgements, &mut parts);
-                by_envelope[index] = (judgements, findings);
+                by_envelope[index] = self.against(envelope, index, &record, &mut parts);
             }
         }
-        let (judgements, findings): (Vec<_>, Vec<_>) = by_envelope.into_iter().unzip();
-        (self.result(judgements.concat()), findings.concat())
+        let (rules, findings): (Vec<_>, Vec<_>) = by_envelope.into_iter().unzip();
+        (self.result(rules.concat()), findings.concat())
+    }
+
+    /// One envelope, in order of its rules; those that are not about this seat or scenario are left out.
+    fn against(
+        &self,
+        envelope: &Envelope,
+        index: usize,
+        record: &Filtered,
+        parts: &mut PartsOfView<'_>,
+    ) -> (Vec<RuleResult>, Vec<Finding>) {
+        let (mut rules, mut findings) = (Vec::new(), Vec::new());
+        for (rule, of_train) in envelope.rules.iter().zip(&self.judging.of_train[index]) {
+            rules.extend(of_train.clone());
+            let scope = self.scope(rule, record);
+            let state = &self.judging.state;
+            if let Some(judgement) = envelope::judge(envelope, rule, record, &scope, state) {
+                findings.extend(self.findings(rule, &judgement, parts));
+                rules.push(self.placed(judgement));
+            }
+        }
+        (rules, findings)
+    }
+
+    /// The part of a record in which a rule is about this seat.
+    fn scope(&self, rule: &Rule, record: &Filtered) -> Scope {
+        let (_, scenario) = self.judging.plan.names(self.judging.id);
+        if !(in_scenario(rule, scenario) && for_seat(rule, self.car, self.seat)) {
+            return Scope::Elsewhere;
+        }
+        if self.station_m.is_empty() {
+            return Scope::Whole;
+        }
+        let way = Way {
+            spine: &self.judging.design.spine,
+            station_m: self.station_m,
+            delay: record.delay_s * record.rate_hz,
+        };
+        way.scope(&rule.holds)
     }
 
     fn record(&self, view: &View) -> Filtered {
@@ -49,19 +86,17 @@ impl SeatView<'_> {
 
     fn findings(
         &self,
-        envelope: &Envelope,
-        judgements: &[Judgement],
+        rule: &Rule,
+        judgement: &Judgement,
         parts: &mut PartsOfView<'_>,
     ) -> Vec<Finding> {
-        let mut findings = Vec::new();
-        for (rule, judgement) in envelope.rules.iter().zip(judgements) {
-            let RuleKind::Sustained(demand) = &rule.kind;
-            for breach in &judgement.findings {
-                let parts = parts.along(demand.axis);
-                findings.push(self.finding(judgement, breach, parts));
-            }
-        }
-        findings
+        let RuleKind::Sustained(demand) = &rule.kind else {
+            return Vec::new();
+        };
+        let breaches = judgement.findings.iter();
+        breaches
+            .map(|breach| self.finding(judgement, breach, parts.along(demand.axis)))
+            .collect()
     }
 
     fn finding(&self, judgement: &Judgement, breach: &Breach, parts: &PartSeries<'_>) -> Finding {
@@ -75,15 +110,14 @@ impl SeatView<'_> {
         Finding {
             variant: variant.to_owned(),
             scenario: scenario.to_owned(),
-            car: self.car + 1,
-            seat: self.seat.name.clone(),
+            rider: Some(Rider {
+                car: self.car + 1,
+                seat: self.seat.name.clone(),
+            }),
             envelope: judgement.envelope.clone(),
             rule: judgement.rule.clone(),
-            outcome: if breach.worst.utilisation - judgement.band > 1.0 {
-                Outcome::Outside
-            } else {
-                Outcome::TooCloseToCall
-            },
+            outcome: judgement.outcome_of(breach),
+            unit: judgement.unit,
             breach: *breach,
             band: judgement.band,
             station_m,
@@ -96,13 +130,13 @@ impl SeatView<'_> {
         }
     }
 
-    fn result(&self, judgements: Vec<Judgement>) -> SeatResult {
+    fn result(&self, rules: Vec<RuleResult>) -> SeatResult {
         let wrapped_m = |i: usize| self.judging.design.spine.wrapped_m(self.station_m[i]);
         SeatResult {
             car: self.car + 1,
             seat: self.seat.name.clone(),
             felt_g: (self.felt_g.each_ref()).map(|axis_g| Extremes::of(axis_g, wrapped_m)),
-            rules: judgements.into_iter().map(|j| self.placed(j)).collect(),
+            rules,
         }
     }
 

@@ -54,28 +54,29 @@ impl<'a> PartSeries<'a> {
 
     /// The state of things at a spell's peak.
     pub(super) fn why(&self, spell: &Spell, speed_m_s: f64, spine: &SpinePoint) -> Why {
-        let at = spell.peak_sample;
-        let (gravity, normal) = (self.gravity_g[at], self.normal_g[at]);
-        let tangential = self.tangential_g[at];
+        let at = |part_g: &[f64]| read_at(part_g, spell.peak_position);
+        let (gravity, normal) = (at(&self.gravity_g), at(&self.normal_g));
+        let tangential = at(&self.tangential_g);
+        let load_g = at(&self.record.axes_g[self.axis as usize]);
         Why {
             speed_m_s,
             radius_m: spine.radius_m(),
             grade_rad: spine.grade_rad(),
             bank_left_rad: spine.bank_left_rad(),
-            parts_g: Parts {
+            parts_g: Some(Parts {
                 gravity,
                 normal,
                 tangential,
-                offset: self.record.axes_g[self.axis as usize][at] - gravity - normal - tangential,
-            },
+                offset: load_g - gravity - normal - tangential,
+            }),
         }
     }
 
     /// Changes that would bring the load at a spell's peak to its limit; left out where there is none.
     pub(super) fn remedies(&self, spell: &Spell, why: &Why) -> Vec<Remedy> {
         let remedies = [
-            speed_remedy(spell.limit_g, why),
-            radius_remedy(spell.limit_g, why),
+            speed_remedy(spell.limit, why),
+            radius_remedy(spell.limit, why),
             self.bank_remedy(spell, why),
         ];
         remedies.into_iter().flatten().collect()
@@ -87,12 +88,16 @@ impl<'a> PartSeries<'a> {
         if self.axis != Axis::Y || sideways {
             return None;
         }
-        let [x_g, y_g, z_g] = self.record.axes_g.each_ref().map(|a| a[spell.peak_sample]);
+        let [x_g, y_g, z_g] = self
+            .record
+            .axes_g
+            .each_ref()
+            .map(|a| read_at(a, spell.peak_position));
         let (sin_recline, cos_recline) = self.seat.recline_rad.sin_cos();
         let up_g = sin_recline * x_g + cos_recline * z_g;
         // A rider who looks back has the car's left on the right.
         let facing = self.seat.faces_left_rad.cos().signum();
-        let turn_rad = bank_turn_rad(facing * y_g, up_g, facing * spell.limit_g);
+        let turn_rad = bank_turn_rad(facing * y_g, up_g, facing * spell.limit);
         let bank_rad = why.bank_left_rad?;
         remedy(Change::Bank, bank_rad, wrapped_rad(bank_rad + turn_rad))
     }
@@ -109,7 +114,7 @@ fn bank_turn_rad(left_g: f64, up_g: f64, limit_g: f64) -> f64 {
 
 /// Normal and offset parts grow with v²: v √((limit − gravity − tangential)/(normal + offset)).
 fn speed_remedy(limit_g: f64, why: &Why) -> Option<Remedy> {
-    let parts = &why.parts_g;
+    let parts = why.parts_g?;
     let share = (limit_g - parts.gravity - parts.tangential) / (parts.normal + parts.offset);
     let speed_m_s = why.speed_m_s * share.sqrt();
     remedy(Change::Speed, why.speed_m_s, speed_m_s)
@@ -117,7 +122,7 @@ fn speed_remedy(limit_g: f64, why: &Why) -> Option<Remedy> {
 
 /// The normal part goes with 1/ρ.
 fn radius_remedy(limit_g: f64, why: &Why) -> Option<Remedy> {
-    let parts = &why.parts_g;
+    let parts = why.parts_g?;
     let share = parts.normal / (limit_g - parts.gravity - parts.tangential - parts.offset);
     let radius_m = why.radius_m?;
     remedy(Change::Radius, radius_m, radius_m * share).filter(|_| share > 0.0)
@@ -125,6 +130,12 @@ fn radius_remedy(limit_g: f64, why: &Why) -> Option<Remedy> {
 
 fn remedy(change: Change, from: f64, to: f64) -> Option<Remedy> {
     to.is_finite().then_some(Remedy { change, from, to })
+}
+
+/// A series read straight between its samples, at a position within it.
+pub(super) fn read_at(values: &[f64], position: f64) -> f64 {
+    let (before, after) = (position.floor() as usize, position.ceil() as usize);
+    values[before] + (values[after] - values[before]) * (position - before as f64)
 }
 
 /// Gravity, normal and tangential part along a rider axis at a sample, g.

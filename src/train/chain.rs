@@ -65,14 +65,13 @@ impl<'a> Chain<'a> {
     /// a root beyond that, or none, is no place.
     fn neighbour(&self, station_m: f64, spacing_m: f64) -> Option<f64> {
         let chord_m = spacing_m.abs();
-        let from = self.spine.at(station_m);
-        let bend = chord_m * from.curvature_1_m();
-        let mut arc_m = chord_m * (1.0 + bend * bend / 24.0).min(1.2);
+        let (from, _) = self.spine.path_at(station_m);
+        let mut arc_m = chord_m;
         let side = spacing_m.signum();
         for _ in 0..50 {
-            let point = self.spine.at(station_m + side * arc_m);
-            let link = point.position_m - from.position_m;
-            let slope = 2.0 * side * link.dot(&point.tangent.value);
+            let (point, tangent) = self.spine.path_at(station_m + side * arc_m);
+            let link = point - from;
+            let slope = 2.0 * side * link.dot(&tangent);
             let step = (link.norm_squared() - chord_m * chord_m) / slope;
             arc_m -= step;
             if !(arc_m > 0.5 * chord_m && arc_m < 2.0 * chord_m) {

@@ -44,6 +44,8 @@ pub struct Poses {
     last_m: f64,
     /// Length of a closed spine.
     lap_m: Option<f64>,
+    /// Where an axle meets a break of the spine, increasing; a closed spine has none.
+    breaks_m: Vec<f64>,
 }
 
 /// The place of one q in the tables, from [`Poses::locate`].
@@ -111,7 +113,8 @@ impl Poses {
                 track_m: last_m,
             });
         }
-        let nodes = nodes(spine, &chain, &layout, (first_m, last_m), settings.step_m)?;
+        let knots = knots(spine, &chain, &layout, (first_m, last_m))?;
+        let nodes = nodes(&knots, settings.step_m);
         let tables = Tables::filled(spine, &chain, &layout, &nodes)?;
         let Tables { cars, axles, .. } = tables;
         let grid = Grid::new(with_guards(nodes));
@@ -124,6 +127,7 @@ impl Poses {
             first_m,
             last_m,
             lap_m,
+            breaks_m: knots,
         })
     }
 
@@ -144,6 +148,14 @@ impl Poses {
     /// Length of a closed spine, m.
     pub fn lap_m(&self) -> Option<f64> {
         self.lap_m
+    }
+
+    /// Stations of the leading axle, between two of them, at which second derivatives of poses may
+    /// jump, increasing, m.
+    pub fn breaks_between_m(&self, a: f64, b: f64) -> &[f64] {
+        let from = self.breaks_m.partition_point(|&q| q <= a.min(b));
+        let to = self.breaks_m.partition_point(|&q| q < a.max(b));
+        &self.breaks_m[from..to.max(from)]
     }
 
     /// Length of the spine, m.
@@ -365,13 +377,12 @@ fn car_jets(front: (VectorJet, VectorJet), rear: (VectorJet, VectorJet)) -> Jets
     [row(|j| j.value), row(|j| j.d1), row(|j| j.d2)]
 }
 
-/// Grid nodes: where any axle meets a break, and between those at equal steps no wider than asked.
-fn nodes(
+/// Both ends, and between them where any axle meets a break.
+fn knots(
     spine: &Spine,
     chain: &Chain<'_>,
     layout: &Layout,
     (first_m, last_m): (f64, f64),
-    step_m: f64,
 ) -> Result<Vec<f64>, PoseError> {
     let mut knots = vec![first_m, last_m];
     for axle in 0..layout.axles_m.len() {
@@ -388,14 +399,19 @@ fn nodes(
     if let Some(end) = knots.last_mut() {
         *end = last_m;
     }
-    let mut nodes = vec![first_m];
+    Ok(knots)
+}
+
+/// Grid nodes: the knots, and between them equal steps no wider than asked.
+fn nodes(knots: &[f64], step_m: f64) -> Vec<f64> {
+    let mut nodes = vec![knots[0]];
     for ends in knots.windows(2) {
         let steps = ((ends[1] - ends[0]) / step_m).ceil().max(1.0);
         let width = (ends[1] - ends[0]) / steps;
         nodes.extend((1..steps as usize).map(|i| ends[0] + i as f64 * width));
         nodes.push(ends[1]);
     }
-    Ok(nodes)
+    nodes
 }
 
 /// Refuses tables beyond the stated bound.

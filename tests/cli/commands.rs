@@ -5,6 +5,8 @@ mod export;
 mod faults;
 mod fixture;
 mod new;
+mod rules;
+mod speed_rules;
 mod wrong_input;
 
 use std::io::Read;

@@ -51,7 +51,11 @@ fn an_export_that_is_ended_leaves_whole_files() {
         assert!(found.keys().eq(new.keys()), "after signal {signal}");
         for (name, text) in &found {
             let whole = *text == new[name] || *text == old[name];
-            assert!(whole, "{name} after signal {signal}: {} bytes", text.len());
+            assert!(
+                whole,
+                "{name:?} after signal {signal}: {} bytes",
+                text.len()
+            );
             replaced += usize::from(*text == new[name]);
         }
         restore(&study, &old);

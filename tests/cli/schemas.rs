@@ -91,6 +91,7 @@ fn bad_input_is_refused_where_its_form_is_wrong() {
                 (Some("form"), Err(_)) => Err("is no YAML, so its form cannot be judged"),
                 (Some("meaning"), Ok(false)) => Err("is refused, so it is wrong by its form"),
                 (Some("meaning"), Err(_)) => Err("is no YAML, so its meaning cannot be judged"),
+                (Some("text"), Ok(false)) => Err("is refused, so it is wrong by its form"),
                 (Some("form" | "meaning" | "text"), _) => Ok(()),
                 _ => Err("has a mark that is not `form`, `meaning` or `text`"),
             };

@@ -444,3 +444,28 @@ pub fn boole(from: f64, to: f64, panels: usize, f: impl Fn(f64) -> f64) -> f64 {
 
 /// Degrees as radians.
 pub const DEG: f64 = PI / 180.0;
+
+/// Axle distance of the short car that stands for a point on curves that are no circles, m.
+pub const SHORT_M: f64 = 0.01;
+
+/// At the origin, level, heading east.
+pub fn east() -> Start {
+    Start {
+        bearing_rad: FRAC_PI_2,
+        ..Start::default()
+    }
+}
+
+/// A straight slope with a train of one car, 1 m from axle to axle.
+pub fn slope(length_m: f64, grade_deg: f64, mass_kg: f64) -> (Poses, Train) {
+    let train = point_train(1.0, mass_kg);
+    let poses = Poses::new(&straight(length_m, grade_deg * DEG), &train).unwrap();
+    (poses, train)
+}
+
+/// The catalogue's train of B09: four cars of 1250 kg, 3 m apart.
+pub fn four_cars() -> Train {
+    let mut cars = vec![car(1.0, 1250.0); 4];
+    cars.iter_mut().for_each(|car| car.length_m = 3.0);
+    train(cars)
+}

@@ -8,13 +8,6 @@ use nalgebra::Vector3;
 
 use crate::fixture::*;
 
-fn east() -> Start {
-    Start {
-        bearing_rad: FRAC_PI_2,
-        ..Start::default()
-    }
-}
-
 /// A turn to the left whose rate rises and falls over a part of it.
 fn turn(length_m: f64, left_rad: f64, ramp: f64) -> Element {
     Element {

@@ -291,3 +291,44 @@ fn exact_prefix_of_a_run() {
         close(a.speed_m_s, b.speed_m_s, 1e-8);
     }
 }
+
+/// A closed track with a dip of 8 m, whose points begin `from_rad` after its lowest place.
+fn dipping_ring(from_rad: f64) -> Spine {
+    let curve = |t: f64| {
+        let (sin, cos) = (t + from_rad).sin_cos();
+        Vector3::new(25.0 * cos, 25.0 * sin, -4.0 * cos)
+    };
+    level_points(lap_points(TAU, 480, curve), true)
+}
+
+/// Rocking to rest over the seam, with stations below 0, is rocking to rest anywhere: a train let go
+/// in the dip at the seam does what it does when the points begin half a lap away.
+#[test]
+fn exact_rest_over_the_seam() {
+    let train = ring_train();
+    let (seam, off) = (dipping_ring(0.0), dipping_ring(std::f64::consts::PI));
+    let half_m = 0.5 * seam.length_m();
+    let ends = [(&seam, 2.0), (&off, 2.0 + half_m)].map(|(spine, from_m)| {
+        let poses = Poses::new(spine, &train).unwrap();
+        let mut release = zoned(from_m, 6.0, vec![]);
+        release.resistance.running = 0.02;
+        let goal = until(from_m + spine.length_m());
+        let history = run(&poses, &train, &release, &goal);
+        assert_eq!(history.end, RunEnd::RolledBack);
+        assert!(history.energy.closure_j.abs() <= 1e-6 * history.energy.turned_over_j);
+        let rest_m = history.end_station_m - from_m;
+        (history.reversals, rest_m, history.duration_s)
+    });
+    assert!(
+        ends[0].0.len() >= 3 && ends[0].0[1].station_m < 0.0,
+        "{:?}",
+        ends[0].0
+    );
+    assert_eq!(ends[0].0.len(), ends[1].0.len());
+    for (a, b) in ends[0].0.iter().zip(&ends[1].0) {
+        close(a.time_s, b.time_s, 1e-6);
+        close(a.station_m, b.station_m - half_m, 1e-6);
+    }
+    close(ends[0].1, ends[1].1, 1e-6);
+    close(ends[0].2, ends[1].2, 1e-5);
+}

@@ -69,6 +69,7 @@ fn response(filter: &Butterworth, f_hz: f64, rate_hz: f64) -> Complex<f64> {
 
 /// D02: |H| = 1/√(1 + W⁸), W = tan(πf/fs)/tan(πfc/fs); phase; delay at zero frequency.
 #[test]
+#[allow(clippy::approx_constant)]
 fn exact_butterworth_response() {
     let filter = Butterworth::new(4, 5.0, 200.0);
     for (f_hz, gain) in [
@@ -119,7 +120,8 @@ fn exact_butterworth_of_any_order() {
 /// D03 (SciPy 1.17.1 `sosfilt`, zero state): unit step; ours starts steady at the zero before it.
 #[test]
 fn published_step_response() {
-    let cases: [((f64, f64), usize, f64, &[(usize, f64)]); 2] = [
+    type Case<'a> = ((f64, f64), usize, f64, &'a [(usize, f64)]);
+    let cases: [Case<'_>; 2] = [
         (
             (5.0, 200.0),
             35,

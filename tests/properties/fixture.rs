@@ -3,10 +3,10 @@
 use std::sync::Arc;
 
 use crestfall::diagnostic::{Place, Source};
-use crestfall::envelope::{Judgement, RunState, judge};
+use crestfall::envelope::{self, Judgement, RunState, Scope};
 use crestfall::input::{
     Axis, Between, Demand, Document, Envelope, Filter, GravityTerm, Rule, RuleKind, Sign, Status,
-    Sustained,
+    Sustained, Where,
 };
 use crestfall::loads::Filtered;
 
@@ -27,6 +27,14 @@ pub(crate) fn judged(demand: &Sustained, signal: &[f64], rate_hz: f64) -> Judgem
         &RunState::Complete,
     )
     .remove(0)
+}
+
+/// Every rule of an envelope over the whole record.
+pub(crate) fn judge(envelope: &Envelope, record: &Filtered, run: &RunState) -> Vec<Judgement> {
+    let rules = envelope.rules.iter();
+    rules
+        .filter_map(|rule| envelope::judge(envelope, rule, record, &Scope::Whole, run))
+        .collect()
 }
 
 pub(crate) fn record(signal: &[f64], rate_hz: f64) -> Filtered {
@@ -54,6 +62,8 @@ pub(crate) fn envelope(demands: Vec<Sustained>) -> Envelope {
         clause: None,
         note: None,
         kind: RuleKind::Sustained(demand),
+        holds: Where::default(),
+        scale: None,
         place: place.clone(),
     };
     Envelope {

@@ -1,9 +1,9 @@
 //! Outcomes, edges, signs and times of single judgements.
 
-use crestfall::envelope::{Outcome, RunState, judge};
+use crestfall::envelope::{Outcome, RunState};
 use crestfall::input::{Demand, Sign, Sustained};
 
-use crate::fixture::{assert_close, envelope, judged, limit_for, record};
+use crate::fixture::{assert_close, envelope, judge, judged, limit_for, record};
 
 #[test]
 fn a_record_that_cannot_be_judged_is_never_inside() {
@@ -94,10 +94,7 @@ fn times_are_those_of_the_ride_and_loads_are_signed() {
     filtered.delay_s = 0.05;
     let judgement = &judge(&envelope(vec![demand]), &filtered, &RunState::Complete)[0];
     let spell = judgement.governing.expect("a load");
-    assert_eq!(
-        (spell.load_g, spell.peak_g, spell.limit_g),
-        (-2.0, -2.0, -1.0)
-    );
+    assert_eq!((spell.load, spell.peak, spell.limit), (-2.0, -2.0, -1.0));
     assert_close(spell.duration_s, 0.09, 1e-12);
     assert_eq!(spell.from_s, 0.0);
     assert_close(spell.to_s, 0.04, 1e-12);
@@ -116,8 +113,8 @@ fn a_floor_is_run_on_what_is_missing_from_one() {
     let judgement = judged(&demand, &signal, 100.0);
     assert_close(judgement.utilisation.expect("judged"), 1.2 / 0.8, 1e-12);
     let spell = judgement.governing.expect("a load");
-    assert_close(spell.load_g, -0.2, 1e-12);
-    assert_close(spell.limit_g, 0.2, 1e-12);
+    assert_close(spell.load, -0.2, 1e-12);
+    assert_close(spell.limit, 0.2, 1e-12);
     let heavy = judged(&demand, &[1.5; 50], 100.0);
     assert_eq!(heavy.utilisation, Some(0.0));
 }

@@ -8,12 +8,14 @@ mod definition;
 mod fixture;
 mod outcomes;
 mod random;
+mod scopes;
+mod speeds;
 
-use crestfall::envelope::{Judgement, Outcome, RunState, judge};
+use crestfall::envelope::{Judgement, Outcome, RunState};
 use proptest::prelude::*;
 
 use definition::Definition;
-use fixture::{envelope, judged, record};
+use fixture::{envelope, judge, judged, record};
 use random::{demands, limits, signals};
 
 proptest! {

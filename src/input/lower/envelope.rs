@@ -2,6 +2,8 @@
 
 use crate::input::field::{At, Field, Located, WordOr, optional};
 use crate::input::lower::curve::{check_floor_axis, floor_of, limits_of, lowered_between};
+use crate::input::lower::holds::{holds, scale};
+use crate::input::lower::speed::{check_speed, refuse_foreign_keys, speed};
 use crate::input::lower::{Lower, Names};
 use crate::input::written::envelope::{
     AxisWord, ButterworthKeys, EnvelopeFile, FilterKeys, FilterWord, GravityWord, KindWord,
@@ -135,26 +137,33 @@ fn rule(
     if let Some(id) = &id {
         ids.add(id, lower);
     }
-    for later in [
-        keys.place.take(),
-        keys.scale.take(),
-        keys.only_if.take(),
-        keys.outcome.take(),
-    ] {
+    for later in [keys.only_if.take(), keys.outcome.take()] {
         lower.later(later);
     }
-    let kind = lower.require(std::mem::replace(&mut keys.kind, Field::Bad), &at, "kind")?;
-    if kind.value != KindWord::Sustained {
-        lower.later_word(&kind.at);
-        return None;
-    }
+    let holds = holds(keys.holds.take(), lower);
+    let scale = scale(keys.scale.take(), lower);
     let (clause, note) = (optional(keys.clause.take()), optional(keys.note.take()));
-    let kind = sustained(keys, &at, gravity, lower).map(RuleKind::Sustained);
+    let kind = lower.require(std::mem::replace(&mut keys.kind, Field::Bad), &at, "kind")?;
+    refuse_foreign_keys(kind.value, &keys, lower);
+    let kind = match kind.value {
+        KindWord::Sustained => sustained(keys, &at, gravity, lower).map(RuleKind::Sustained),
+        KindWord::Speed => speed(keys, &at, lower).map(RuleKind::Speed),
+        _ => {
+            lower.later_word(&kind.at);
+            None
+        }
+    };
+    let (kind, holds, scale) = (kind?, holds?, scale?);
+    if let RuleKind::Speed(bounds) = &kind {
+        check_speed(bounds, &holds, scale.as_ref(), lower);
+    }
     Some(Rule {
         id: id?.value.0,
         clause: clause.map(|clause| clause.value.0),
         note: note.map(|note| note.value.0),
-        kind: kind?,
+        kind,
+        holds,
+        scale: scale.map(|scale| scale.value),
         place: lower.place(&at),
     })
 }

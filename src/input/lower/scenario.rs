@@ -252,7 +252,7 @@ fn riders_of(word: RidersWord) -> Riders {
     }
 }
 
-fn seat_name(written: Located<Text>, lower: &mut Lower) -> Option<SeatName> {
+pub(super) fn seat_name(written: Located<Text>, lower: &mut Lower) -> Option<SeatName> {
     let text = &written.value.0;
     let parts = text.split_once('-').filter(|(_, seat)| !seat.is_empty());
     match parts.and_then(|(car, seat)| Some((car.parse::<usize>().ok()?, seat))) {

@@ -25,10 +25,30 @@ pub(super) fn side(schema: &mut Schema) {
     hold(schema, exactly_one(&["left", "right"]));
 }
 
-/// At most one end of a run; scenarios, a grid or both.
+/// A train for all variants, or one for each.
+pub(super) fn study(schema: &mut Schema) {
+    let own = json!({"type": "object", "required": ["train"]});
+    let each = json!({"properties": {"variants": {"additionalProperties": own}}});
+    hold(schema, json!({"anyOf": [given("train"), each]}));
+}
+
+/// At most one end of a run; scenarios, a grid or both; air and a release that are whole for each.
 pub(super) fn operation(schema: &mut Schema) {
     hold(schema, not_both("until", "finish"));
     hold(schema, at_least_one(&["scenarios", "grid"]));
+    let each = json!({"properties": {
+        "scenarios": {"additionalProperties": given("air")},
+        "grid": given("air")
+    }});
+    hold(schema, json!({"anyOf": [given("air"), each]}));
+    for key in ["station", "speed"] {
+        let release = json!({"required": ["release"], "properties": {"release": given(key)}});
+        let each = json!({
+            "properties": {"scenarios": {"additionalProperties": release}},
+            "allOf": [none_of(&["grid"])]
+        });
+        hold(schema, json!({"anyOf": [release, each]}));
+    }
 }
 
 /// A density, or an altitude and perhaps a temperature.
@@ -77,17 +97,71 @@ pub(super) fn named(schema: &mut Schema) {
     hold(schema, json!({"minItems": 1, "items": given("name")}));
 }
 
-/// What a rule of each kind has.
-pub(super) fn rule(schema: &mut Schema) {
-    let limits = json!({"if": given("limits"), "then": given("sign")});
-    let upright = word("axis", "z");
-    let floor = json!({"if": given("floor"), "then": {"allOf": [upright, {"not": given("sign")}]}});
-    let curve = exactly_one(&["limits", "floor"]);
-    let whole = json!({"required": ["axis", "between"], "allOf": [curve, limits, floor]});
+/// Without gravity there is no floor.
+pub(super) fn envelope(schema: &mut Schema) {
+    let floorless = json!({"properties": {"rules": {"items": none_of(&["floor"])}}});
     hold(
         schema,
-        json!({"if": word("kind", "sustained"), "then": whole}),
+        json!({"if": word("gravity", "excluded"), "then": floorless}),
     );
+}
+
+/// Values of a curve above 0.
+pub(super) fn limits(schema: &mut Schema) {
+    values(schema, json!({"exclusiveMinimum": 0}));
+}
+
+/// Values of a curve below 1.
+pub(super) fn floor(schema: &mut Schema) {
+    values(schema, json!({"exclusiveMaximum": 1}));
+}
+
+/// What holds for the values of a curve, in a map or in a list of pairs.
+fn values(schema: &mut Schema, condition: Value) {
+    let pair = json!({"prefixItems": [true, condition]});
+    hold(
+        schema,
+        json!({"additionalProperties": condition, "items": pair}),
+    );
+}
+
+/// What a rule of each kind has, and nothing of another kind.
+pub(super) fn rule(schema: &mut Schema) {
+    for (kind, then) in [("sustained", sustained()), ("speed", speed())] {
+        hold(schema, json!({"if": word("kind", kind), "then": then}));
+    }
+}
+
+/// Limits with their sign, or a floor of the upright axis.
+fn sustained() -> Value {
+    let limits = json!({"if": given("limits"), "then": given("sign")});
+    let upright = json!({"allOf": [word("axis", "z"), none_of(&["sign"])]});
+    let floor = json!({"if": given("floor"), "then": upright});
+    json!({
+        "required": ["axis", "between"],
+        "allOf": [exactly_one(&["limits", "floor"]), limits, floor, none_of(&["min", "max", "stop"])]
+    })
+}
+
+/// Bounds or a stop of the whole train; only an upper bound may be scaled.
+fn speed() -> Value {
+    let other = [
+        "axis",
+        "sign",
+        "limits",
+        "floor",
+        "between",
+        "ignore_below",
+        "reading",
+    ];
+    let train = json!({"properties": {"where": none_of(&["seats"])}});
+    let slower = json!({"if": word("stop", "required"), "then": none_of(&["min"])});
+    json!({
+        "allOf": [
+            at_least_one(&["min", "max", "stop"]), none_of(&other), train, slower,
+            not_both("min", "scale"), {"if": given("scale"), "then": given("max")}
+        ]
+    })
 }
 
 /// Adds a condition.
@@ -116,6 +190,10 @@ fn exactly_one(keys: &[&str]) -> Value {
 
 fn at_least_one(keys: &[&str]) -> Value {
     json!({"anyOf": keys.iter().map(|key| given(key)).collect::<Vec<_>>()})
+}
+
+fn none_of(keys: &[&str]) -> Value {
+    json!({"not": at_least_one(keys)})
 }
 
 fn not_both(one: &str, other: &str) -> Value {

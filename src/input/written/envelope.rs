@@ -3,7 +3,7 @@
 use schemars::JsonSchema;
 use serde::Deserialize;
 
-use crate::input::dimension::{Frequency, Time};
+use crate::input::dimension::{Frequency, Length, Speed, Time};
 use crate::input::field::{Field, Text, WordOr};
 use crate::input::quantity::Quantity;
 use crate::input::written::{Curve, Later, alternatives};
@@ -11,7 +11,7 @@ use crate::input::written::{Curve, Later, alternatives};
 /// An acceptance envelope: rules from one document, transcribed by the user.
 #[derive(Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "envelope")]
+#[schemars(rename = "envelope", transform = alternatives::envelope)]
 pub(in crate::input) struct EnvelopeFile {
     /// Version of the file format: 1.
     #[schemars(extend("const" = 1))]
@@ -137,8 +137,10 @@ pub(in crate::input) struct RuleKeys {
     /// Which way a load counts; needed with `limits`.
     pub(in crate::input) sign: Option<Field<SignWord>>,
     /// Limits in g, above 0, against duration; or give `floor`.
+    #[schemars(transform = alternatives::limits)]
     pub(in crate::input) limits: Option<Field<Curve>>,
     /// Least loads in g, below 1, against duration; in place of `limits` and `sign`.
+    #[schemars(transform = alternatives::floor)]
     pub(in crate::input) floor: Option<Field<Curve>>,
     /// How the curve runs between its points.
     pub(in crate::input) between: Option<Field<BetweenWord>>,
@@ -146,15 +148,74 @@ pub(in crate::input) struct RuleKeys {
     pub(in crate::input) ignore_below: Option<Field<Quantity<Time>>>,
     /// How duration is read: `spell`, the default.
     pub(in crate::input) reading: Option<Field<ReadingWord>>,
+    /// Least speed of the train.
+    pub(in crate::input) min: Option<Field<Quantity<Speed>>>,
+    /// Largest speed of the train.
+    pub(in crate::input) max: Option<Field<Quantity<Speed>>>,
+    /// Whether the train must come to rest, or must not.
+    pub(in crate::input) stop: Option<Field<StopWord>>,
+    /// Where, when and for whom it holds; everywhere, always and for all where left out.
     #[serde(rename = "where")]
-    #[schemars(skip)]
-    pub(in crate::input) place: Option<Field<Later>>,
-    #[schemars(skip)]
-    pub(in crate::input) scale: Option<Field<Later>>,
+    pub(in crate::input) holds: Option<Field<WhereKeys>>,
+    /// What its limits are multiplied by.
+    pub(in crate::input) scale: Option<Field<ScaleKeys>>,
     #[schemars(skip)]
     pub(in crate::input) only_if: Option<Field<Later>>,
     #[schemars(skip)]
     pub(in crate::input) outcome: Option<Field<Later>>,
+}
+
+/// Where, when and for whom a rule holds: different keys are and-ed, the entries of one or-ed.
+#[derive(Debug, Deserialize, JsonSchema)]
+#[serde(deny_unknown_fields)]
+#[schemars(rename = "where", extend("minProperties" = 1))]
+pub(in crate::input) struct WhereKeys {
+    /// Stretches by station: the seat's own, for a `speed` rule the leading axle's.
+    #[schemars(extend("minItems" = 1))]
+    pub(in crate::input) stations: Option<Field<Vec<Field<StationsKeys>>>>,
+    /// Names of elements or landmarks.
+    #[schemars(extend("minItems" = 1))]
+    pub(in crate::input) landmarks: Option<Field<Vec<Field<Text>>>>,
+    /// Names of scenarios.
+    #[schemars(extend("minItems" = 1))]
+    pub(in crate::input) scenarios: Option<Field<Vec<Field<Text>>>>,
+    /// Car and seat, such as `1-front-left`.
+    #[schemars(extend("minItems" = 1))]
+    pub(in crate::input) seats: Option<Field<Vec<Field<Text>>>>,
+}
+
+/// A stretch of stations.
+#[derive(Debug, Deserialize, JsonSchema)]
+#[serde(deny_unknown_fields)]
+#[schemars(rename = "stations")]
+pub(in crate::input) struct StationsKeys {
+    /// First station.
+    pub(in crate::input) from: Field<Quantity<Length>>,
+    /// Last station; below `from` across the seam of a closed track.
+    pub(in crate::input) to: Field<Quantity<Length>>,
+}
+
+/// What limits are multiplied by, and why.
+#[derive(Debug, Deserialize, JsonSchema)]
+#[serde(deny_unknown_fields)]
+#[schemars(rename = "scale")]
+pub(in crate::input) struct ScaleKeys {
+    /// Above 0.
+    #[schemars(extend("minimum" = 1e-6, "maximum" = 1e6))]
+    pub(in crate::input) factor: Field<f64>,
+    /// Why; it is shown with every result.
+    pub(in crate::input) reason: Field<Text>,
+}
+
+/// Whether the train must come to rest, or must not.
+#[derive(Clone, Copy, Debug, PartialEq, Deserialize, JsonSchema)]
+#[serde(rename_all = "kebab-case")]
+#[schemars(rename = "stop")]
+pub(in crate::input) enum StopWord {
+    /// It must neither come to rest nor reverse.
+    Never,
+    /// It must come to rest.
+    Required,
 }
 
 /// What a rule demands.
@@ -176,7 +237,7 @@ pub(in crate::input) enum KindWord {
     After,
     #[schemars(skip)]
     Index,
-    #[schemars(skip)]
+    /// Bounds on the speed of the train.
     Speed,
 }
 

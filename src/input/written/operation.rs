@@ -65,10 +65,13 @@ pub(in crate::input) struct FinishKeys {
 #[schemars(rename = "resistance")]
 pub(in crate::input) struct ResistanceKeys {
     /// Coefficient on the load in the car's up direction.
+    #[schemars(extend("minimum" = 0))]
     pub(in crate::input) running: Field<f64>,
     /// Coefficient on the load in the car's left direction.
+    #[schemars(extend("minimum" = 0))]
     pub(in crate::input) side: Field<f64>,
     /// Coefficient on the train's weight, whatever the load; 0 where left out.
+    #[schemars(extend("minimum" = 0))]
     pub(in crate::input) bearings: Option<Field<f64>>,
     /// Drag coefficient times area of the whole train.
     pub(in crate::input) drag_area: Field<Quantity<Area>>,

@@ -6,11 +6,12 @@ use serde::Deserialize;
 use crate::input::dimension::{Acceleration, Frequency};
 use crate::input::field::{Entries, Field, Text, WordOr};
 use crate::input::quantity::Quantity;
+use crate::input::written::alternatives;
 
 /// A study: the designs under comparison, a train, an operation and the envelopes they are held against.
 #[derive(Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "study")]
+#[schemars(rename = "study", transform = alternatives::study)]
 pub(in crate::input) struct StudyFile {
     /// Version of the file format: 1.
     #[schemars(extend("const" = 1))]

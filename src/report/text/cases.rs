@@ -2,7 +2,6 @@
 
 use super::entry::case_name;
 use super::layout::{new_table, section};
-use crate::envelope::Outcome;
 use crate::report::end_key;
 use crate::report::number::{Units, seconds, utilisation};
 use crate::study::{Assessment, Case, RuleResult, Run};
@@ -26,7 +25,6 @@ pub(super) fn table_of_cases(assessment: &Assessment, units: Units) -> String {
 
 fn case_row(assessment: &Assessment, case: &Case, units: Units) -> Vec<String> {
     let rules = case.seats.iter().flat_map(|s| &s.rules);
-    let outcome = rules.clone().map(|r| r.judgement.outcome).max();
     let used = |r: &&RuleResult| r.judgement.utilisation.unwrap_or(-1.0);
     let worst = rules.max_by(|a, b| used(a).total_cmp(&used(b)));
     let worst = worst.and_then(|r| Some((&r.judgement.rule, r.judgement.utilisation?)));
@@ -38,7 +36,7 @@ fn case_row(assessment: &Assessment, case: &Case, units: Units) -> Vec<String> {
     };
     vec![
         case_name(case),
-        outcome.unwrap_or(Outcome::NotAssessed).to_string(),
+        case.outcome().to_string(),
         case.run.as_ref().map_or_else(
             |_| "not made".to_owned(),
             |r| end_key(r.end).replace('-', " "),

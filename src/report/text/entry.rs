@@ -1,8 +1,9 @@
 //! One rule in one seat of one case, as the tables go through them.
 
+use crate::envelope::Unit;
 use crate::study::{Assessment, Case, RuleResult, SeatResult};
 
-/// One rule in one seat of one case.
+/// One rule in one seat of one case; a rule about the train in the first seat.
 #[derive(Clone, Copy)]
 pub(super) struct Entry<'a> {
     pub(super) case: &'a Case,
@@ -26,7 +27,15 @@ impl Entry<'_> {
             .is_gt()
     }
 
+    /// Whether it is about what a rider feels, not about the train.
+    pub(super) fn is_felt(&self) -> bool {
+        self.rule.judgement.unit == Unit::StandardGravity
+    }
+
     pub(super) fn seat_name(&self) -> String {
+        if !self.is_felt() {
+            return "train".to_owned();
+        }
         format!("{}-{}", self.seat.car, self.seat.seat)
     }
 
@@ -40,16 +49,13 @@ pub(super) fn case_name(case: &Case) -> String {
 }
 
 pub(super) fn entries(assessment: &Assessment) -> Vec<Entry<'_>> {
-    let of_seat = |case, seat| {
-        let rules = |s: &'_ SeatResult| s.rules.len();
-        (0..rules(seat)).map(move |i| Entry {
-            case,
-            seat,
-            rule: &seat.rules[i],
-        })
-    };
-    let cases = assessment.cases.iter();
-    cases
-        .flat_map(|case| case.seats.iter().flat_map(move |seat| of_seat(case, seat)))
-        .collect()
+    let mut entries = Vec::new();
+    for case in &assessment.cases {
+        for (number, seat) in case.seats.iter().enumerate() {
+            let rules = seat.rules.iter().map(|rule| Entry { case, seat, rule });
+            // What is about the train is the same in every seat.
+            entries.extend(rules.filter(|entry| number == 0 || entry.is_felt()));
+        }
+    }
+    entries
 }

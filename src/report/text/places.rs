@@ -1,7 +1,8 @@
 //! The places where a limit is left: findings of all seats and scenarios that overlap along the track are one place.
 
 use super::layout::{counted, list};
-use crate::report::number::{Units, load, seconds, utilisation};
+use crate::envelope::Unit;
+use crate::report::number::{Units, seconds, utilisation};
 use crate::study::{Assessment, Change, Finding};
 
 /// No more places are printed: a list that nobody reads to its end hides what leads it.
@@ -68,25 +69,55 @@ impl<'a> Place<'a> {
 
 fn item(place: &Place<'_>, units: Units) -> String {
     let finding = place.worst;
-    let spell = &finding.breach.worst;
     let landmark = finding.landmark.as_ref();
     format!(
-        "{}, {}{}: {} of the limit, {} for {} against {}; worst in seat {}-{}, {} / {}, at {}{}; {}",
+        "{}, {}{}: {}; worst {}{} / {}{}{}; {}",
         finding.rule,
         units.stretch(place.from_m, place.to_m),
         landmark.map_or_else(String::new, |name| format!(" ({name})")),
-        utilisation(spell.utilisation),
-        load(spell.load_g),
-        seconds(spell.duration_s),
-        load(spell.limit_g),
-        finding.car,
-        finding.seat,
+        extent(finding, units),
+        seat(finding),
         finding.variant,
         finding.scenario,
-        units.speed(finding.why.speed_m_s),
+        speed(finding, units),
         at_limit(finding, units),
         counted(place.count, "finding"),
     )
+}
+
+/// How far beyond the limit, and for how long.
+fn extent(finding: &Finding, units: Units) -> String {
+    let spell = &finding.breach.worst;
+    let used = utilisation(spell.utilisation);
+    let load = units.measured(finding.unit, spell.load);
+    let limit = units.measured(finding.unit, spell.limit);
+    match finding.unit {
+        Unit::StandardGravity => format!(
+            "{used} of the limit, {load} for {} against {limit}",
+            seconds(spell.duration_s)
+        ),
+        Unit::MetreASecond if spell.limit == 0.0 && spell.duration_s == 0.0 => {
+            "the train stops or reverses".to_owned()
+        }
+        Unit::MetreASecond if spell.limit == 0.0 => {
+            format!("the train does not stop, slowest {load}")
+        }
+        Unit::MetreASecond if used == "-" => format!("{load} against {limit}"),
+        Unit::MetreASecond => format!("{used} of the limit, {load} against {limit}"),
+    }
+}
+
+fn seat(finding: &Finding) -> String {
+    let rider = finding.rider.as_ref();
+    rider.map_or_else(String::new, |r| format!("in seat {}-{}, ", r.car, r.seat))
+}
+
+/// The speed at the worst load; where the load is the speed it has been said.
+fn speed(finding: &Finding, units: Units) -> String {
+    match finding.unit {
+        Unit::StandardGravity => format!(", at {}", units.speed(finding.why.speed_m_s)),
+        Unit::MetreASecond => String::new(),
+    }
 }
 
 /// The speed that would bring the load to its limit, where there is one.

@@ -2,11 +2,11 @@
 
 use super::entry::Entry;
 use super::layout::{new_table, section};
-use crate::report::number::{Units, load, seconds, utilisation};
+use crate::report::number::{Units, seconds, utilisation};
 
 pub(super) fn worst_of_each_rule(entries: &[Entry<'_>], units: Units) -> String {
     let mut table = new_table(&[
-        "rule", "outcome", "of limit", "load", "limit", "for", "seat at", "seat", "case",
+        "rule", "outcome", "of limit", "load", "limit", "for", "at", "seat", "case",
     ]);
     for worst in worst_entries(entries) {
         table.add_row(worst_row(&worst, units));
@@ -22,9 +22,15 @@ fn worst_row(worst: &Entry<'_>, units: Units) -> Vec<String> {
         judgement.rule.clone(),
         judgement.outcome.to_string(),
         shown(judgement.utilisation.map(utilisation)),
-        shown(spell.map(|s| load(s.load_g))),
-        shown(spell.map(|s| load(s.limit_g))),
-        shown(spell.map(|s| seconds(s.duration_s))),
+        shown(spell.map(|s| units.measured(judgement.unit, s.load))),
+        shown(spell.map(|s| units.measured(judgement.unit, s.limit))),
+        shown(
+            worst
+                .is_felt()
+                .then_some(spell)
+                .flatten()
+                .map(|s| seconds(s.duration_s)),
+        ),
         shown(worst.rule.station_m.map(|m| units.station(m))),
         worst.seat_name(),
         worst.case_name(),
