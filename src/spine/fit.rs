@@ -145,6 +145,11 @@ impl Fitted {
         }
     }
 
+    pub(super) fn has_margin(&self) -> bool {
+        let known = |noise: &Noise| !matches!(noise, Noise::Unknown);
+        known(&self.noise) || known(&self.roll_noise)
+    }
+
     fn parameter_at(&self, station_m: f64) -> f64 {
         let s = if self.closed {
             station_m.rem_euclid(self.length_m)

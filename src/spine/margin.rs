@@ -21,6 +21,19 @@ pub struct Margin {
     pub roll_bend_rad_m2: f64,
 }
 
+impl Margin {
+    /// The larger of each.
+    pub fn larger(&self, other: &Self) -> Self {
+        Self {
+            direction: self.direction.max(other.direction),
+            bend_1_m: self.bend_1_m.max(other.bend_1_m),
+            roll_rad: self.roll_rad.max(other.roll_rad),
+            roll_rate_rad_m: self.roll_rate_rad_m.max(other.roll_rate_rad_m),
+            roll_bend_rad_m2: self.roll_bend_rad_m2.max(other.roll_bend_rad_m2),
+        }
+    }
+}
+
 /// Half-widths of a value and its first two derivatives over a parameter.
 #[derive(Clone, Debug)]
 pub(super) enum Noise {
