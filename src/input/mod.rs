@@ -43,7 +43,7 @@ pub use envelope::{
 pub use operation::{
     Air, Device, Goal, Operation, Release, Resistance, Riders, Scenario, SeatName, Wind, Zone,
 };
-pub use points::{Columns, Fit, PointTable};
+pub use points::{Columns, Fit, Grids, PointTable};
 pub use read::{read_envelope, read_study, read_track};
 pub use schema::schema;
 pub use study::{InputFile, Study, Variant};

@@ -10,8 +10,9 @@ use nalgebra::Vector3;
 use crate::diagnostic::{Diagnostic, Place, Source};
 use crate::input::files::{Files, Named};
 use crate::input::point_header::{Header, Layout};
+use crate::input::points::Row;
 use crate::input::text::TABLE_BYTES;
-use crate::input::{Columns, Fit, PointTable};
+use crate::input::{Columns, Fit, Grids, PointTable};
 
 /// Fewest points through which a quintic spline is laid.
 const FEWEST: usize = 6;
@@ -26,6 +27,17 @@ pub(super) struct Request {
     pub(super) closed: bool,
     /// The `points` entry.
     pub(super) place: Place,
+    pub(super) fit: Fit,
+    /// Rows to leave out, each with its place.
+    pub(super) except: Vec<(u64, Place)>,
+}
+
+/// A table that was read.
+struct Read {
+    columns: Columns,
+    rows: Vec<Row>,
+    errors_m: Option<Vec<f64>>,
+    grids: Grids,
 }
 
 /// The table, if it could be read whole.
@@ -40,8 +52,9 @@ pub(super) fn read(
         source: &source,
         found: Vec::new(),
         left_out: 0,
+        digits: [Digits::default(); 2],
     };
-    let read = table.read();
+    let read = table.read(&request);
     let Table {
         found: own,
         left_out,
@@ -56,16 +69,59 @@ pub(super) fn read(
         );
         found.push(Diagnostic::error(message).at(&request.place));
     }
-    let (columns, rows) = read.filter(|_| whole)?;
-    Some(PointTable {
-        columns,
-        closed: request.closed,
-        fit: Fit::Exact,
-        place: request.place,
-        source: Arc::clone(&source),
-        rows,
-    })
+    let read = read.filter(|_| whole)?;
+    let fit = stated_fit(&request, &read, found)?;
+    let mut table = PointTable::new(read.columns, request.closed, fit, request.place);
+    table.errors_m = read.errors_m;
+    table.grids = read.grids;
+    Some(table.with_rows(Arc::clone(&source), read.rows))
 }
+
+/// The fit, with the errors of the table where it has them.
+fn stated_fit(request: &Request, read: &Read, found: &mut Vec<Diagnostic>) -> Option<Fit> {
+    match (request.fit, &read.errors_m) {
+        (fit, None) => Some(fit),
+        (Fit::Auto | Fit::Stated, Some(_)) => Some(Fit::Stated),
+        (Fit::Exact | Fit::Within { .. }, Some(_)) => {
+            let mistake = Diagnostic::error(
+                "the table states each point's error in `error_mm`, and `fit` does not go by it",
+            );
+            found.push(
+                mistake.at(&request.place).hint(
+                    "write `fit: auto` to take the errors of the table, or take the column out",
+                ),
+            );
+            None
+        }
+    }
+}
+
+/// Decimals that numbers are written with.
+#[derive(Clone, Copy, Debug, Default)]
+struct Digits {
+    most: u32,
+    /// Some number is written with an exponent.
+    floating: bool,
+}
+
+impl Digits {
+    fn see(&mut self, text: &str) {
+        self.floating |= text.contains(['e', 'E']);
+        let decimals = text
+            .split_once('.')
+            .map_or(0, |(_, decimals)| decimals.len());
+        self.most = self.most.max(decimals as u32);
+    }
+
+    /// The last digit, in the unit that `factor` turns into SI; none where the numbers sit on no grid.
+    fn grid(self, factor: f64) -> Option<f64> {
+        let fine = self.most <= FINEST_GRID;
+        (!self.floating && fine).then(|| factor * 0.1f64.powi(self.most as i32))
+    }
+}
+
+/// Decimals beyond which the last digit says nothing of how a table was made.
+const FINEST_GRID: u32 = 14;
 
 /// One value of a line.
 #[derive(Clone, Debug)]
@@ -79,10 +135,12 @@ pub(super) struct Table<'a> {
     source: &'a Arc<Source>,
     pub(super) found: Vec<Diagnostic>,
     left_out: usize,
+    /// Of coordinates, and of what gives the attitude beside them.
+    digits: [Digits; 2],
 }
 
 impl<'a> Table<'a> {
-    fn read(&mut self) -> Option<(Columns, Vec<Range<usize>>)> {
+    fn read(&mut self, request: &Request) -> Option<Read> {
         if let Some(quote) = self.source.text.find('"') {
             self.error(
                 quote..quote + 1,
@@ -101,10 +159,15 @@ impl<'a> Table<'a> {
             self.error(first.clone(), message);
             return None;
         }
+        self.check_except(request, rest.len());
         let (mut rows, mut values) = (Vec::new(), Vec::new());
-        for line in rest {
+        for (number, line) in (1..).zip(rest) {
+            if request.except.iter().any(|(row, _)| *row == number as u64) {
+                continue;
+            }
             if let Some(row) = self.row(line, &header) {
-                rows.push(line.clone());
+                let span = line.clone();
+                rows.push(Row { number, span });
                 values.push(row);
             }
         }
@@ -116,7 +179,44 @@ impl<'a> Table<'a> {
             let message = format!("found {} points, expected at least {FEWEST}", rows.len());
             self.error(first.clone(), message);
         }
-        Some((columns(header.layout, &values), rows))
+        let stated = header.columns.len();
+        let error_m = |row: &Vec<f64>| row[stated] * 1e-3;
+        let errors_m = header.error.map(|_| values.iter().map(error_m).collect());
+        let (columns, grids) = (
+            columns(header.layout, &values),
+            self.grids(&header, &values),
+        );
+        Some(Read {
+            columns,
+            rows,
+            errors_m,
+            grids,
+        })
+    }
+
+    /// The grids of the numbers, in SI. The mean of two rails is no coarser than each; an attitude
+    /// that never changes is a design value, not a rounded one.
+    fn grids(&self, header: &Header, values: &[Vec<f64>]) -> Grids {
+        let [position, attitude] = self.digits;
+        let constant = values.windows(2).all(|pair| pair[0][3..] == pair[1][3..]);
+        Grids {
+            position_m: position.grid(header.columns[0].1),
+            attitude: match header.layout {
+                Layout::Bank | Layout::Up if !constant => attitude.grid(header.columns[3].1),
+                Layout::Rails | Layout::Bank | Layout::Up => None,
+            },
+        }
+    }
+
+    /// Rows to leave out that the table does not have.
+    fn check_except(&mut self, request: &Request, count: usize) {
+        for (row, place) in &request.except {
+            if *row == 0 || *row > count as u64 {
+                let message =
+                    format!("there is no row {row} to leave out, the table has rows 1 to {count}");
+                self.push(Diagnostic::error(message).at(place));
+            }
+        }
     }
 
     /// Lines that are neither blank nor comments, without their ends.
@@ -157,11 +257,29 @@ impl<'a> Table<'a> {
             self.error(line.clone(), message);
             return None;
         }
-        let mut values = Vec::with_capacity(header.columns.len());
-        for &(index, factor) in &header.columns {
+        let mut values = Vec::with_capacity(header.columns.len() + 1);
+        for (place, &(index, factor)) in header.columns.iter().enumerate() {
+            let beside = usize::from(place >= 3 && header.layout != Layout::Rails);
+            self.digits[beside].see(cells[index].text);
             values.extend(self.number(&cells[index]).map(|number| number * factor));
         }
-        (values.len() == header.columns.len()).then_some(values)
+        if let Some(index) = header.error {
+            values.extend(self.stated_error(&cells[index]));
+        }
+        let expected = header.columns.len() + usize::from(header.error.is_some());
+        (values.len() == expected).then_some(values)
+    }
+
+    fn stated_error(&mut self, cell: &Cell<'_>) -> Option<f64> {
+        let error_mm = self.number(cell)?;
+        if error_mm <= 0.0 {
+            let found = format!(
+                "found an error of {} mm, expected one above 0 mm",
+                cell.text
+            );
+            self.error(cell.span.clone(), found);
+        }
+        Some(error_mm)
     }
 
     fn number(&mut self, cell: &Cell<'_>) -> Option<f64> {
@@ -188,12 +306,12 @@ impl<'a> Table<'a> {
         }
     }
 
-    fn check_points(&mut self, layout: Layout, values: &[Vec<f64>], rows: &[Range<usize>]) {
-        for (row, line) in values.iter().zip(rows) {
-            if layout == Layout::Up && row[3..] == [0.0, 0.0, 0.0] {
+    fn check_points(&mut self, layout: Layout, values: &[Vec<f64>], rows: &[Row]) {
+        for (row, line) in values.iter().zip(rows.iter().map(|row| &row.span)) {
+            if layout == Layout::Up && row[3..6] == [0.0, 0.0, 0.0] {
                 self.error(line.clone(), "the up vector is 0, expected a direction");
             }
-            if layout == Layout::Rails && row[..3] == row[3..] {
+            if layout == Layout::Rails && row[..3] == row[3..6] {
                 self.error(
                     line.clone(),
                     "both rails are at one point, expected some gauge",
@@ -208,10 +326,10 @@ impl<'a> Table<'a> {
             if place_of(&pair[0]) == place_of(&pair[1]) {
                 let mistake = self
                     .mistake(
-                        rows[index + 1].clone(),
+                        rows[index + 1].span.clone(),
                         "this point is the one before it again",
                     )
-                    .also(&self.place(rows[index].clone()), "the one before");
+                    .also(&self.place(rows[index].span.clone()), "the one before");
                 self.push(mistake.hint("take one of the two lines out"));
             }
         }

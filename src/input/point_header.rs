@@ -6,6 +6,9 @@ use std::ops::Range;
 use crate::input::decode::{listed, nearest};
 use crate::input::point_file::{Cell, Table};
 
+/// The column of each point's standard deviation per coordinate.
+const ERROR_COLUMN: &str = "error_mm";
+
 /// Metres in a foot, exact: NIST SP 811 (2008), appendix B.8.
 const FOOT_M: f64 = 0.3048;
 
@@ -49,6 +52,8 @@ impl Layout {
 pub(super) struct Header {
     pub(super) layout: Layout,
     pub(super) columns: Vec<(usize, f64)>,
+    /// Where each point's own error stands.
+    pub(super) error: Option<usize>,
     pub(super) width: usize,
 }
 
@@ -100,11 +105,12 @@ impl Table<'_> {
         Some(Header {
             layout,
             columns: columns.into_iter().collect::<Option<_>>()?,
+            error: cells.iter().position(|cell| cell.text == ERROR_COLUMN),
             width: cells.len(),
         })
     }
 
-    /// Columns that are unknown, stand twice or are not built yet.
+    /// Columns that are unknown or stand twice.
     fn refuse_columns(&mut self, cells: &[Cell<'_>], layout: Layout) {
         let metric: Vec<String> = layout
             .names()
@@ -117,9 +123,7 @@ impl Table<'_> {
                 .names()
                 .iter()
                 .any(|name| factor(name, cell.text).is_some());
-            if cell.text == "error_mm" {
-                self.error(span, "the column `error_mm` is not built yet");
-            } else if !is_known {
+            if !is_known && cell.text != ERROR_COLUMN {
                 let hint = match nearest(cell.text, metric.iter().map(String::as_str)) {
                     Some(near) => format!("did you mean `{near}`?"),
                     None => format!(

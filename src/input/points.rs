@@ -16,24 +16,63 @@ pub struct PointTable {
     pub closed: bool,
     /// How the curve is laid through them.
     pub fit: Fit,
+    /// Standard deviation of each point, per coordinate, m, where the table states it.
+    pub errors_m: Option<Vec<f64>>,
+    /// The decimal grids on which the table's numbers sit.
+    pub grids: Grids,
     /// The `points` entry of the track file.
     pub place: Place,
+    /// Bytes and number (from 1, excepted rows counted) of each row.
+    rows: Vec<Row>,
     /// The text of the table.
-    pub(crate) source: Arc<Source>,
-    /// Bytes of each row.
-    pub(crate) rows: Vec<Range<usize>>,
+    source: Arc<Source>,
+}
+
+/// Where a point stands in its table.
+#[derive(Clone, Debug)]
+pub(in crate::input) struct Row {
+    /// From 1, excepted rows counted.
+    pub(in crate::input) number: usize,
+    /// Its bytes.
+    pub(in crate::input) span: Range<usize>,
+}
+
+/// Decimal grids: the last digit that any number of a column set has.
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
+pub struct Grids {
+    /// Of coordinates, m.
+    pub position_m: Option<f64>,
+    /// Of banks, rad, or of up vectors' components.
+    pub attitude: Option<f64>,
 }
 
 impl PointTable {
     /// A table that was read from no file: every row's place is `place`.
     pub fn new(columns: Columns, closed: bool, fit: Fit, place: Place) -> Self {
+        let rows = (1..=columns.len()).map(|number| Row {
+            number,
+            span: place.span.clone(),
+        });
+        let (rows, source) = (rows.collect(), Arc::clone(&place.source));
+        let (errors_m, grids) = (None, Grids::default());
         Self {
+            columns,
             closed,
             fit,
-            source: Arc::clone(&place.source),
-            rows: vec![place.span.clone(); columns.len()],
-            columns,
+            errors_m,
+            grids,
             place,
+            rows,
+            source,
+        }
+    }
+
+    /// The same, read from the rows of a text.
+    pub(in crate::input) fn with_rows(self, source: Arc<Source>, rows: Vec<Row>) -> Self {
+        Self {
+            source,
+            rows,
+            ..self
         }
     }
 
@@ -47,12 +86,32 @@ impl PointTable {
         self.rows.is_empty()
     }
 
-    /// The line of point `row` (from 0).
-    pub fn row_place(&self, row: usize) -> Place {
+    /// Number of the row of point `point` (from 0) in the table, from 1.
+    pub fn row_number(&self, point: usize) -> usize {
+        self.rows[point].number
+    }
+
+    /// The line of point `point` (from 0).
+    pub fn row_place(&self, point: usize) -> Place {
         Place {
             source: Arc::clone(&self.source),
-            span: self.rows[row].clone(),
+            span: self.rows[point].span.clone(),
         }
+    }
+}
+
+impl Columns {
+    /// Number of points.
+    pub fn len(&self) -> usize {
+        match self {
+            Self::Bank { centre_m, .. } | Self::Up { centre_m, .. } => centre_m.len(),
+            Self::Rails { left_m, .. } => left_m.len(),
+        }
+    }
+
+    /// Whether there are none.
+    pub fn is_empty(&self) -> bool {
+        self.len() == 0
     }
 }
 
@@ -82,19 +141,20 @@ pub enum Columns {
     },
 }
 
-impl Columns {
-    /// Number of points.
-    fn len(&self) -> usize {
-        match self {
-            Self::Bank { centre_m, .. } | Self::Up { centre_m, .. } => centre_m.len(),
-            Self::Rails { left_m, .. } => left_m.len(),
-        }
-    }
-}
-
 /// How a curve is laid through points.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub enum Fit {
     /// Through every point.
     Exact,
+    /// The smoothest curve that honours these standard deviations per coordinate.
+    Within {
+        /// Of a point (of each rail where the rails are given), m.
+        error_m: f64,
+        /// Of the bank or of the up vector's direction, rad, where stated.
+        bank_error_rad: Option<f64>,
+    },
+    /// The smoothest curve that honours the errors stated point by point.
+    Stated,
+    /// The smoothest curve, with the error found.
+    Auto,
 }

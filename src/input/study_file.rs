@@ -8,9 +8,7 @@ use crate::input::holds;
 use crate::input::lower::Lower;
 use crate::input::read::Reader;
 use crate::input::written::study::{StudyFile, VariantKeys};
-use crate::input::{
-    Envelope, FileKind, Filter, Goal, Riders, SeatName, Study, TrackSource, Train, Variant,
-};
+use crate::input::{Envelope, FileKind, Filter, Riders, SeatName, Study, Train, Variant};
 
 /// Most variants that are read.
 const VARIANTS: usize = 100;
@@ -71,7 +69,6 @@ pub(super) fn study(named: &Named, reader: &mut Reader) -> Option<Study> {
         check_rate(&study, plan.rate_place.as_ref(), &mut reader.found);
         check_seats(&study, &mut reader.found);
         reader.found.extend(holds::check(&study));
-        check_tracks(&study, &mut reader.found);
     }
     Some(study)
 }
@@ -236,32 +233,6 @@ fn check_rate(study: &Study, rate_place: Option<&Place>, found: &mut Vec<Diagnos
         let message = format!("a run of up to {samples} samples, expected at most {SAMPLES}");
         let mistake = Diagnostic::error(message).at(rate_place.unwrap_or(&study.operation.place));
         found.push(mistake.hint("lower `rate` or `time_limit`"));
-    }
-}
-
-/// What an operation asks for is there on every track.
-fn check_tracks(study: &Study, found: &mut Vec<Diagnostic>) {
-    for variant in &study.variants {
-        let (track, operation) = (&variant.track, &study.operation);
-        let closed = matches!(&track.source, TrackSource::Points(table) if table.closed);
-        if closed && matches!(operation.goal, Goal::TrackEnd) {
-            let message = format!(
-                "missing key `until` or `finish`, which the closed track `{}` needs",
-                track.name
-            );
-            found.push(Diagnostic::error(message).at(&operation.place));
-        }
-        let zones = operation
-            .scenarios
-            .iter()
-            .flat_map(|scenario| &scenario.zones);
-        for zone in zones.filter(|zone| !closed && zone.to_m < zone.from_m) {
-            let message = format!(
-                "zone `{}` ends at {} m before it begins at {} m, and track `{}` is not closed",
-                zone.name, zone.to_m, zone.from_m, track.name
-            );
-            found.push(Diagnostic::error(message).at(&zone.place));
-        }
     }
 }
 

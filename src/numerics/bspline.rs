@@ -67,7 +67,7 @@ impl<const N: usize> Curve<N> {
     }
 
     /// Taylor coefficients at each left knot, from the B-spline coefficients.
-    fn from_coefficients(knots: &[f64], coefficients: &[[f64; N]]) -> Self {
+    pub(super) fn from_coefficients(knots: &[f64], coefficients: &[[f64; N]]) -> Self {
         let spans = DEGREE..coefficients.len();
         let nodes = knots[DEGREE..=coefficients.len()].to_vec();
         let mut pieces = Quintic::new();
@@ -173,21 +173,38 @@ fn cyclic_coefficients<const N: usize>(
 }
 
 /// Index k with knots[k] ≤ x < knots[k+1], kept inside the spline's range.
-fn knot_span(knots: &[f64], coefficients: usize, x: f64) -> usize {
+pub(super) fn knot_span(knots: &[f64], coefficients: usize, x: f64) -> usize {
     (knots.partition_point(|&k| k <= x) - 1).clamp(DEGREE, coefficients - 1)
 }
 
-/// The six basis functions that do not vanish on a span (de Boor, ch. X, algorithm BSPLVB).
+/// The six basis functions that do not vanish on a span.
 fn basis(knots: &[f64], span: usize, x: f64) -> [f64; DEGREE + 1] {
+    basis_derivatives(knots, span, x, 0)
+}
+
+/// A derivative (`order` 0..=5) of the six basis functions that do not vanish on a span
+/// (de Boor, ch. X, algorithm BSPLVB, and eq. 8 for the derivatives).
+pub(super) fn basis_derivatives(
+    knots: &[f64],
+    span: usize,
+    x: f64,
+    order: usize,
+) -> [f64; DEGREE + 1] {
     let mut values = [0.0; DEGREE + 1];
     values[0] = 1.0;
     for degree in 1..=DEGREE {
+        let differentiate = degree > DEGREE - order;
         let mut saved = 0.0;
         for r in 0..degree {
             let (right, left) = (knots[span + r + 1], knots[span + 1 + r - degree]);
             let term = values[r] / (right - left);
-            values[r] = saved + (right - x) * term;
-            saved = (x - left) * term;
+            if differentiate {
+                values[r] = saved - degree as f64 * term;
+                saved = degree as f64 * term;
+            } else {
+                values[r] = saved + (right - x) * term;
+                saved = (x - left) * term;
+            }
         }
         values[degree] = saved;
     }

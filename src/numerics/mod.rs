@@ -7,3 +7,5 @@ pub mod lowpass;
 pub mod quadrature;
 pub mod quintic;
 pub mod root;
+pub mod smoothing;
+pub mod symmetric;

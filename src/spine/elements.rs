@@ -15,10 +15,10 @@ use crate::numerics::jet::{Jet, VectorJet};
 use crate::numerics::quadrature::integrate;
 use crate::numerics::quintic::Quintic;
 
-/// Stretch over which position is integrated at once, m, and between whose ends it runs as a
-/// quintic: five Gauss points leave less than 1e-15 m where it turns by less than 0.1 rad, and the
-/// quintic h⁶ r⁽⁶⁾/46080, 1e-11 m where direction and grade change over 2 m.
-const PANEL_M: f64 = 0.05;
+/// Stretch over which position is integrated at once, m: a tenth of a metre turns by less than
+/// 0.1 rad on any track a train can follow, for which five Gauss points leave less than 1e-15 m.
+/// A quintic between its ends leaves 1e-9 m where direction and grade change over 2 m.
+const PANEL_M: f64 = 0.1;
 
 /// Elements laid end to end.
 #[derive(Clone, Debug)]
@@ -142,7 +142,7 @@ impl Legs {
         let level_left = VectorJet::from_components(-sin_d, cos_d, Jet::default());
         let level_up = VectorJet::from_components(-(cos_d * sin_g), -(sin_d * sin_g), cos_g);
         SpinePoint {
-            position_m: piece.path(station_m).0,
+            position_m: piece.position_m(leg, station_m),
             tangent,
             up: level_up * cos_b + level_left * sin_b,
         }
@@ -217,13 +217,26 @@ impl Piece {
         self.from_m + panel as f64 * self.panel_m
     }
 
-    /// Position, m, and tangent at a station.
-    fn path(&self, station_m: f64) -> (Vector3<f64>, Vector3<f64>) {
+    /// The panel that holds a station, and how far into it that lies, m.
+    fn panel_at(&self, station_m: f64) -> (usize, f64) {
         let panel = ((station_m - self.from_m) / self.panel_m).max(0.0) as usize;
         let panel = panel.min(self.panel_count - 1);
-        let [position, tangent, _] = self
-            .panels
-            .jets(panel, station_m - self.panel_start_m(panel));
+        (panel, station_m - self.panel_start_m(panel))
+    }
+
+    /// Position at a station, m, integrated from the start of its panel.
+    fn position_m(&self, leg: &Leg, station_m: f64) -> Vector3<f64> {
+        let panel = self.panel_at(station_m).0;
+        let start = Vector3::from(self.panels.jets(panel, 0.0)[0]);
+        let tangent = |s: f64| leg.tangent(self.phase, s);
+        let from_m = self.panel_start_m(panel);
+        start + integrate(from_m, station_m, Vector3::zeros(), tangent)
+    }
+
+    /// Position, m, and tangent at a station, by the quintic.
+    fn path(&self, station_m: f64) -> (Vector3<f64>, Vector3<f64>) {
+        let (panel, offset_m) = self.panel_at(station_m);
+        let [position, tangent, _] = self.panels.jets(panel, offset_m);
         (position.into(), tangent.into())
     }
 }

@@ -1,11 +1,16 @@
-//! A spine through points: quintic B-splines over the cumulative chord, then by arc length.
+//! A spine from points: quintic B-splines over the cumulative chord, then by arc length.
+//!
+//! Through every point, or the smoothest that honours the points' error ([`super::smooth`]).
 
 use nalgebra::Vector3;
 
 use super::SpinePoint;
+use super::margin::{Margin, Noise};
 use super::point::level_left;
+use super::report::{FitMethod, FitReport};
+use super::smooth::{Data, Smooth};
 use crate::diagnostic::Diagnostic;
-use crate::input::{Columns, PointTable};
+use crate::input::{Columns, Fit, PointTable};
 use crate::numerics::bspline::Curve;
 use crate::numerics::jet::{Jet, VectorJet};
 use crate::numerics::quadrature::integrate;
@@ -31,6 +36,34 @@ pub(super) struct Fitted {
     parameters: Quintic<1>,
     length_m: f64,
     closed: bool,
+    noise: Noise,
+    /// Of what turns the frame, in rad.
+    roll_noise: Noise,
+    /// Gauge of two rails, m: their difference over it is a direction.
+    roll_scale: f64,
+    pub(super) report: FitReport,
+}
+
+/// A curve with what is known of its error.
+struct Laid<const N: usize> {
+    curve: Curve<N>,
+    noise: Noise,
+    method: FitMethod,
+    /// Standard deviation per coordinate, stated or found; none where not known.
+    error: Option<f64>,
+    residuals: Vec<f64>,
+    studentised: Vec<f64>,
+}
+
+/// What is asked of one curve.
+struct Wanted<'a> {
+    fit: Fit,
+    /// Standard deviation per coordinate, where stated.
+    stated: Option<f64>,
+    /// Standard deviation of rounding to the table's grid.
+    rounding: Option<f64>,
+    weights: &'a [f64],
+    across: bool,
 }
 
 /// What turns the frame about the tangent, over the parameter.
@@ -52,30 +85,64 @@ struct Knots {
 }
 
 impl Fitted {
-    /// Through every point of a table.
-    pub(super) fn exact(table: &PointTable) -> Result<Self, Vec<Diagnostic>> {
+    /// The curve a table asks for.
+    pub(super) fn new(table: &PointTable) -> Result<Self, Vec<Diagnostic>> {
         let centre = centre_line(&table.columns);
         check_turns(table, &centre)?;
         let knots = Knots::new(&centre, table.closed);
-        let path = knots.through(&components(&centre));
-        let (stations, parameters) = by_station(&path);
+        let (mean_error, weights) = weights(table);
+        let rails = matches!(table.columns, Columns::Rails { .. });
+        // The mean of two rails has 1/√2 of the error of each.
+        let halved = if rails {
+            std::f64::consts::FRAC_1_SQRT_2
+        } else {
+            1.0
+        };
+        let wanted = Wanted {
+            fit: table.fit,
+            stated: mean_error.map(|error_m| error_m * halved),
+            rounding: table
+                .grids
+                .position_m
+                .map(|grid_m| grid_m / 12f64.sqrt() * halved),
+            weights: &weights,
+            across: true,
+        };
+        let path = knots
+            .laid(&components(&centre), &wanted)
+            .map_err(|()| vec![stiff(table)])?;
+        let (stations, parameters) = by_station(&path.curve);
         let length_m = stations.nodes()[stations.nodes().len() - 1];
-        let attitude = attitude(&table.columns, &knots);
-        let closed = table.closed;
+        let roll =
+            attitude(table, &knots, &weights, mean_error).map_err(|()| vec![stiff(table)])?;
+        let report = FitReport::new(table, &path.summary(), roll.error_rad);
         let fitted = Self {
-            path,
-            attitude,
+            path: path.curve,
+            attitude: roll.attitude,
             stations,
             parameters,
             length_m,
-            closed,
+            closed: table.closed,
+            noise: path.noise,
+            roll_noise: roll.noise,
+            roll_scale: roll.scale,
+            report,
         };
         fitted.check_frame(table, &knots)?;
         Ok(fitted)
     }
 
-    pub(super) fn length_m(&self) -> f64 {
-        self.length_m
+    /// How far the spine may lie from the track.
+    pub(super) fn margin_at(&self, station_m: f64) -> Margin {
+        let p = self.parameter_at(station_m);
+        let roll = |order: usize| self.roll_noise.half_width(p, order) / self.roll_scale;
+        Margin {
+            direction: self.noise.half_width(p, 1),
+            bend_1_m: self.noise.half_width(p, 2),
+            roll_rad: roll(0),
+            roll_rate_rad_m: roll(1),
+            roll_bend_rad_m2: roll(2),
+        }
     }
 
     fn parameter_at(&self, station_m: f64) -> f64 {
@@ -86,6 +153,10 @@ impl Fitted {
         };
         let (interval, d) = self.stations.locate(s);
         self.parameters.jets(interval, d)[0][0]
+    }
+
+    pub(super) fn length_m(&self) -> f64 {
+        self.length_m
     }
 
     /// Position, m, and tangent at a station.
@@ -270,13 +341,47 @@ fn centre_line(columns: &Columns) -> Vec<Vector3<f64>> {
     }
 }
 
-/// Splines of what turns the frame.
-fn attitude(columns: &Columns, knots: &Knots) -> Attitude {
-    match columns {
-        Columns::Bank { bank_left_rad, .. } => bank(bank_left_rad, knots),
+/// What turns the frame, with its error.
+struct Roll {
+    attitude: Attitude,
+    noise: Noise,
+    /// Size of the vector that is splined: its error over this is an angle.
+    scale: f64,
+    /// Standard deviation of a point's roll, rad, where known.
+    error_rad: Option<f64>,
+}
+
+/// The curve of what turns the frame.
+fn attitude(
+    table: &PointTable,
+    knots: &Knots,
+    weights: &[f64],
+    mean_error_m: Option<f64>,
+) -> Result<Roll, ()> {
+    let even = vec![1.0; table.len()];
+    let bank_error = match table.fit {
+        Fit::Within { bank_error_rad, .. } => bank_error_rad,
+        Fit::Exact | Fit::Stated | Fit::Auto => None,
+    };
+    let rounding = table.grids.attitude.map(|grid| grid / 12f64.sqrt());
+    let angle = Wanted {
+        fit: table.fit,
+        stated: bank_error,
+        rounding,
+        weights: &even,
+        across: false,
+    };
+    match &table.columns {
+        Columns::Bank { bank_left_rad, .. } => bank(bank_left_rad, knots, &angle),
         Columns::Up { up, .. } => {
             let unit = up.iter().map(|u| u.normalize()).collect::<Vec<_>>();
-            Attitude::Up(knots.through(&components(&unit)))
+            let laid = knots.laid(&components(&unit), &angle)?;
+            Ok(Roll::new(
+                Attitude::Up(laid.curve),
+                laid.noise,
+                1.0,
+                laid.error,
+            ))
         }
         Columns::Rails { left_m, right_m } => {
             let left = left_m
@@ -284,14 +389,42 @@ fn attitude(columns: &Columns, knots: &Knots) -> Attitude {
                 .zip(right_m)
                 .map(|(l, r)| l - r)
                 .collect::<Vec<_>>();
-            Attitude::Left(knots.through(&components(&left)))
+            let gauge_m = left.iter().map(|l| l.norm()).sum::<f64>() / left.len() as f64;
+            // The difference of two rails has √2 of the error of each.
+            let doubled = std::f64::consts::SQRT_2;
+            let grid_m = table.grids.position_m.map(|grid_m| grid_m / 12f64.sqrt());
+            let wanted = Wanted {
+                fit: table.fit,
+                stated: mean_error_m.map(|error_m| error_m * doubled),
+                rounding: grid_m.map(|error_m| error_m * doubled),
+                weights,
+                across: false,
+            };
+            let laid = knots.laid(&components(&left), &wanted)?;
+            Ok(Roll::new(
+                Attitude::Left(laid.curve),
+                laid.noise,
+                gauge_m,
+                laid.error,
+            ))
         }
     }
 }
 
-/// A spline through banks made continuous over ±180°; on a closed track that rolls over whole
-/// turns in a lap, the turns are taken out as a trend so that the rest is periodic.
-fn bank(bank_left_rad: &[f64], knots: &Knots) -> Attitude {
+impl Roll {
+    fn new(attitude: Attitude, noise: Noise, scale: f64, error: Option<f64>) -> Self {
+        Self {
+            attitude,
+            noise,
+            scale,
+            error_rad: error.map(|error| error / scale),
+        }
+    }
+}
+
+/// A curve of banks made continuous over ±180°; on a closed track that rolls over whole turns in a
+/// lap, the turns are taken out as a trend so that the rest is periodic.
+fn bank(bank_left_rad: &[f64], knots: &Knots, wanted: &Wanted<'_>) -> Result<Roll, ()> {
     use std::f64::consts::TAU;
     let nearest = |angle: f64, to: f64| angle - TAU * ((angle - to) / TAU).round();
     let mut unwrapped = Vec::with_capacity(bank_left_rad.len());
@@ -300,18 +433,151 @@ fn bank(bank_left_rad: &[f64], knots: &Knots) -> Attitude {
         unwrapped.push(nearest(angle, before));
     }
     let last = unwrapped[unwrapped.len() - 1];
-    let trend = knots.period_m.map_or(0.0, |period_m| {
-        (nearest(unwrapped[0], last) - unwrapped[0]) / period_m
-    });
+    let turns = |period_m: f64| (nearest(unwrapped[0], last) - unwrapped[0]) / period_m;
+    let trend = knots.period_m.map_or(0.0, turns);
     let level = unwrapped
         .iter()
         .zip(&knots.chord_m)
         .map(|(b, p)| [b - trend * p])
         .collect::<Vec<_>>();
-    Attitude::Bank {
-        level: knots.through(&level),
-        trend,
+    let laid = knots.laid(&level, wanted)?;
+    Ok(Roll::new(
+        Attitude::Bank {
+            level: laid.curve,
+            trend,
+        },
+        laid.noise,
+        1.0,
+        laid.error,
+    ))
+}
+
+/// The mean error of a table's points, where stated, m, and (mean error / own error)² of each.
+fn weights(table: &PointTable) -> (Option<f64>, Vec<f64>) {
+    let even = vec![1.0; table.len()];
+    match (table.fit, &table.errors_m) {
+        (Fit::Within { error_m, .. }, _) => (Some(error_m), even),
+        (Fit::Stated, Some(errors_m)) => {
+            let mean_m = errors_m.iter().sum::<f64>() / errors_m.len() as f64;
+            (
+                Some(mean_m),
+                errors_m.iter().map(|e| (mean_m / e).powi(2)).collect(),
+            )
+        }
+        _ => (None, even),
     }
+}
+
+/// Where interpolated noise makes less than this of r″, 1/m (6e-5 g at 25 m/s), it is no smoothing
+/// that would tell.
+const NO_NOISE_1_M: f64 = 1e-6;
+
+/// An error found by cross-validation up to this many times that of rounding is taken to be rounding.
+const LIKE_ROUNDING: f64 = 1.5;
+
+impl Knots {
+    /// A curve as asked, with its error.
+    fn laid<const N: usize>(
+        &self,
+        values: &[[f64; N]],
+        wanted: &Wanted<'_>,
+    ) -> Result<Laid<N>, ()> {
+        let data = Data {
+            parameters: &self.chord_m,
+            period: self.period_m,
+            values,
+            weights: wanted.weights,
+            across: wanted.across,
+        };
+        match (wanted.fit, wanted.stated) {
+            (Fit::Exact, _) => Ok(self.exact(values, wanted.rounding)),
+            (_, Some(error)) if self.is_noise(error) => {
+                let smooth = data.within(error).map_err(drop)?;
+                Ok(Laid::smooth(smooth, FitMethod::Within))
+            }
+            (_, Some(error)) => Ok(self.exact(values, Some(error))),
+            (_, None) => self.found(values, &data, wanted.rounding),
+        }
+    }
+
+    /// A curve whose error is to be found: that of rounding where cross-validation agrees.
+    fn found<const N: usize>(
+        &self,
+        values: &[[f64; N]],
+        data: &Data<'_, N>,
+        rounding: Option<f64>,
+    ) -> Result<Laid<N>, ()> {
+        if rounding.is_some_and(|rounding| !self.is_noise(rounding)) {
+            return Ok(self.exact(values, rounding));
+        }
+        let validated = data.cross_validated();
+        match (rounding, validated) {
+            (Some(rounding), Ok(found)) if found.error > LIKE_ROUNDING * rounding => {
+                Ok(Laid::smooth(found, FitMethod::CrossValidated))
+            }
+            (Some(rounding), _) => Ok(Laid::smooth(
+                data.within(rounding).map_err(drop)?,
+                FitMethod::Grid,
+            )),
+            (None, Ok(found)) => Ok(Laid::smooth(found, FitMethod::CrossValidated)),
+            (None, Err(_)) => Err(()),
+        }
+    }
+
+    /// Through every point.
+    fn exact<const N: usize>(&self, values: &[[f64; N]], error: Option<f64>) -> Laid<N> {
+        let noise = error.map_or(Noise::Unknown, |deviation| Noise::Interpolated {
+            deviation,
+            parameters: self.chord_m.clone(),
+        });
+        Laid {
+            curve: self.through(values),
+            noise,
+            method: FitMethod::Exact,
+            error,
+            residuals: vec![0.0; values.len()],
+            studentised: vec![0.0; values.len()],
+        }
+    }
+
+    /// Whether interpolating points of this error would tell in a curvature.
+    fn is_noise(&self, deviation: f64) -> bool {
+        let n = self.chord_m.len();
+        let noise = Noise::Interpolated {
+            deviation,
+            parameters: self.chord_m.clone(),
+        };
+        noise.half_width(self.chord_m[n / 2], 2) > NO_NOISE_1_M
+    }
+}
+
+impl<const N: usize> Laid<N> {
+    fn smooth(smooth: Smooth<N>, method: FitMethod) -> Self {
+        Self {
+            curve: smooth.curve,
+            noise: Noise::Smoothed(Box::new(smooth.spread)),
+            method,
+            error: Some(smooth.error),
+            residuals: smooth.residuals,
+            studentised: smooth.studentised,
+        }
+    }
+
+    fn summary(&self) -> super::report::Residuals<'_> {
+        super::report::Residuals {
+            method: self.method,
+            error_m: self.error,
+            residuals_m: &self.residuals,
+            studentised: &self.studentised,
+        }
+    }
+}
+
+/// The equations of a fit could not be solved.
+fn stiff(table: &PointTable) -> Diagnostic {
+    Diagnostic::error("no smooth curve could be laid through these points")
+        .at(&table.place)
+        .hint("state the points' error with `fit: {within: ...}`, and look for points that lie almost on one another")
 }
 
 /// Station of the nodes of a path, and the parameter as a quintic in the station.
@@ -345,22 +611,33 @@ fn check_turns(table: &PointTable, centre: &[Vector3<f64>]) -> Result<(), Vec<Di
         let behind = centre[*i] - centre[(i + n - 1) % n];
         behind.angle(&ahead).to_degrees()
     };
-    let wrong = corners
+    let sharp = corners
         .map(|i| (i, turn_deg(&i)))
-        .filter(|(_, turn)| turn.is_nan() || *turn > LARGEST_TURN_DEG)
-        .map(|(i, turn)| {
-            Diagnostic::error(format!(
-                "the track turns by {turn:.1} deg between the chords before and after this point, \
-                 expected at most {LARGEST_TURN_DEG} deg: the points are too far apart, or out of order, \
-                 to carry a curve"
-            ))
-            .at(&table.row_place(i))
-            .hint("give points closer together, and look for a row out of order or a slip of the pen")
-        })
-        .take(20)
-        .collect::<Vec<_>>();
+        .filter(|(_, turn)| !(*turn <= LARGEST_TURN_DEG));
+    let sharp = sharp.collect::<Vec<_>>();
+    let shown = sharp.iter().take(SHARP_SHOWN).map(|&(i, turn)| {
+        Diagnostic::error(format!(
+            "the track turns by {turn:.1} deg between the chords before and after this point, \
+             expected at most {LARGEST_TURN_DEG} deg: the points are too far apart, or out of order, \
+             to carry a curve"
+        ))
+        .at(&table.row_place(i))
+        .hint("give points closer together, and look for a row out of order or a slip of the pen")
+    });
+    let mut wrong = shown.collect::<Vec<_>>();
+    if let Some(more) = sharp
+        .len()
+        .checked_sub(SHARP_SHOWN)
+        .filter(|&more| more > 0)
+    {
+        let message = format!("the track turns too far at {more} more points of this table");
+        wrong.push(Diagnostic::error(message).at(&table.place));
+    }
     if wrong.is_empty() { Ok(()) } else { Err(wrong) }
 }
+
+/// Points at which a track turns too far that are shown one by one.
+const SHARP_SHOWN: usize = 5;
 
 fn components(vectors: &[Vector3<f64>]) -> Vec<[f64; 3]> {
     vectors.iter().map(|v| [v.x, v.y, v.z]).collect()

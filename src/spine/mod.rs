@@ -6,9 +6,14 @@
 mod ease;
 mod elements;
 mod fit;
+mod margin;
 mod point;
+mod report;
+mod smooth;
 
+pub use margin::Margin;
 pub use point::SpinePoint;
+pub use report::{FitMethod, FitReport, Outlier};
 
 use nalgebra::Vector3;
 
@@ -62,7 +67,7 @@ impl Spine {
                 (Shape::Elements(legs), length_m, false, named)
             }
             TrackSource::Points(table) => {
-                let fitted = fit::Fitted::exact(table)?;
+                let fitted = fit::Fitted::new(table)?;
                 let length_m = fitted.length_m();
                 (
                     Shape::Fitted(Box::new(fitted)),
@@ -127,6 +132,23 @@ impl Spine {
         match &self.shape {
             Shape::Elements(legs) => legs.at_on(piece, station_m),
             Shape::Fitted(fitted) => fitted.at(station_m),
+        }
+    }
+
+    /// How far the spine may lie from the track at a station, given the error of its points; none
+    /// for elements.
+    pub fn margin_at(&self, station_m: f64) -> Margin {
+        match &self.shape {
+            Shape::Elements(_) => Margin::default(),
+            Shape::Fitted(fitted) => fitted.margin_at(station_m),
+        }
+    }
+
+    /// How the curve was laid through points; none for elements.
+    pub fn fit(&self) -> Option<&FitReport> {
+        match &self.shape {
+            Shape::Elements(_) => None,
+            Shape::Fitted(fitted) => Some(&fitted.report),
         }
     }
 

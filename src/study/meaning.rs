@@ -109,7 +109,7 @@ fn check_zone(zone: &Zone, design: &Design<'_>) -> Option<Diagnostic> {
     let error = |message: String| Some(Diagnostic::error(message).at(&zone.place));
     if let Some(off_m) = [zone.from_m, zone.to_m].into_iter().find(|&m| !on_track(m)) {
         return error(format!(
-            "zone `{name}` reaches to {off_m} m, the track of variant `{variant}` from 0 m to {length_m:.3} m"
+            "zone `{name}` reaches to {off_m} m, off the track of variant `{variant}`, which runs from 0 m to {length_m:.3} m"
         ));
     }
     if zone.from_m <= zone.to_m {

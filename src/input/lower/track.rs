@@ -1,5 +1,6 @@
 //! Lowers a track file: elements with what they change, or a table of points.
 
+use crate::diagnostic::Place;
 use crate::input::dimension::{Angle, Length};
 use crate::input::field::{At, Field, Located, WordOr, optional};
 use crate::input::files::{Files, Named};
@@ -281,27 +282,36 @@ fn points_source(
     let fit = lower
         .require(keys.fit, &at, "fit")
         .and_then(|fit| lowered_fit(fit, lower));
-    lower.later(keys.except);
+    let except = excepted(keys.except, lower);
     let file = file?;
     let request = Request {
         named: named.names(&file.value.0, lower.place(&file.at)),
         closed: optional(keys.closed).is_some_and(|closed| closed.value),
         place: lower.place(&at),
+        fit: fit?,
+        except,
     };
-    let table = point_file::read(request, files, &mut lower.found);
-    fit.and(table)
+    point_file::read(request, files, &mut lower.found)
+}
+
+/// Rows that are left out, each with its place.
+fn excepted(field: Option<Field<Vec<Field<u64>>>>, lower: &Lower) -> Vec<(u64, Place)> {
+    let rows = optional(field).map_or(Vec::new(), |list| list.value);
+    let rows = rows.into_iter().filter_map(Field::given);
+    rows.map(|row| (row.value, lower.place(&row.at))).collect()
 }
 
 fn lowered_fit(fit: Located<WordOr<FitWord, FitKeys>>, lower: &mut Lower) -> Option<Fit> {
     match fit.value {
         WordOr::Word(FitWord::Exact) => Some(Fit::Exact),
-        WordOr::Word(FitWord::Auto) => {
-            lower.later_word(&fit.at);
-            None
-        }
-        WordOr::Keys(_) => {
-            lower.error(&fit.at, "`fit: {within: ...}` is not built yet");
-            None
+        WordOr::Word(FitWord::Auto) => Some(Fit::Auto),
+        WordOr::Keys(keys) => {
+            let within = lower.require(keys.within, &fit.at, "within");
+            let bank = optional(keys.bank_within).map(|bank| lower.above_zero(&bank));
+            within.map(|within| Fit::Within {
+                error_m: lower.above_zero(&within),
+                bank_error_rad: bank,
+            })
         }
     }
 }

@@ -106,12 +106,12 @@ pub(in crate::input) struct RampKeys {
 pub(in crate::input) struct PointsKeys {
     /// Path of the table (CSV).
     pub(in crate::input) file: Field<Text>,
-    /// How the curve is laid through the points: `exact`.
+    /// How the curve is laid through the points: `exact`, `auto`, or within a stated error.
     pub(in crate::input) fit: Field<WordOr<FitWord, FitKeys>>,
     /// Whether the last point is followed by the first; `false` where left out.
     pub(in crate::input) closed: Option<Field<bool>>,
-    #[schemars(skip)]
-    pub(in crate::input) except: Option<Field<Later>>,
+    /// Rows of the table that are left out, counted from 1 below the header; say why in a comment.
+    pub(in crate::input) except: Option<Field<Vec<Field<u64>>>>,
 }
 
 /// A fit without settings.
@@ -121,21 +121,20 @@ pub(in crate::input) struct PointsKeys {
 pub(in crate::input) enum FitWord {
     /// Through every point.
     Exact,
-    #[schemars(skip)]
+    /// The smoothest curve that honours the points' error, which is found: the column `error_mm`,
+    /// else the rounding of the coordinates' decimal grid, else by cross-validation.
     Auto,
 }
 
-/// A fit within a stated error, not built yet.
+/// A fit within a stated error.
 #[derive(Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
 #[schemars(rename = "fit_within")]
 pub(in crate::input) struct FitKeys {
-    #[schemars(skip)]
-    #[expect(dead_code, reason = "refused as a whole until it is built")]
-    pub(in crate::input) within: Option<Field<Later>>,
-    #[schemars(skip)]
-    #[expect(dead_code, reason = "refused as a whole until it is built")]
-    pub(in crate::input) bank_within: Option<Field<Later>>,
+    /// Standard deviation of a point (of each rail where the rails are given) in each coordinate.
+    pub(in crate::input) within: Field<Quantity<Length>>,
+    /// Standard deviation of the bank, or of an up vector's direction; found where left out.
+    pub(in crate::input) bank_within: Option<Field<Quantity<Angle>>>,
 }
 
 /// A named stretch of stations.
