@@ -10,6 +10,7 @@ use std::path::{Path, PathBuf};
 use crestfall::input::{FileKind, schema};
 use jsonschema::Validator;
 use serde_json::Value;
+use serde_yaml::Value as Yaml;
 
 const KINDS: [(&str, FileKind); 5] = [
     ("study", FileKind::Study),
@@ -125,7 +126,23 @@ fn validators() -> BTreeMap<&'static str, Validator> {
 /// A YAML file as an editor sees it.
 fn read(file: &Path) -> Result<Value, String> {
     let bytes = fs::read(file).map_err(|e| e.to_string())?;
-    serde_yaml::from_slice(&bytes).map_err(|e| e.to_string())
+    let mut document: Yaml = serde_yaml::from_slice(&bytes).map_err(|e| e.to_string())?;
+    document.apply_merge().map_err(|e| e.to_string())?;
+    match is_json(&document) {
+        true => serde_json::to_value(document).map_err(|e| e.to_string()),
+        false => Err("no JSON".to_owned()),
+    }
+}
+
+/// JSON has neither tags nor numbers that are not finite.
+fn is_json(value: &Yaml) -> bool {
+    match value {
+        Yaml::Number(number) => number.as_f64().is_some_and(f64::is_finite),
+        Yaml::Sequence(items) => items.iter().all(is_json),
+        Yaml::Mapping(entries) => entries.values().all(is_json),
+        Yaml::Tagged(_) => false,
+        _ => true,
+    }
 }
 
 /// `track` of `first.track.yaml`, also where the file is named for its kind alone.

@@ -20,6 +20,11 @@ pub(super) fn element(schema: &mut Schema) {
     hold(schema, json!({"if": given("radius"), "then": turns}));
 }
 
+/// Rows are counted from 1.
+pub(super) fn rows(schema: &mut Schema) {
+    hold(schema, json!({"items": {"minimum": 1}}));
+}
+
 /// A side: to the left or to the right.
 pub(super) fn side(schema: &mut Schema) {
     hold(schema, exactly_one(&["left", "right"]));

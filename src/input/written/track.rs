@@ -111,6 +111,7 @@ pub(in crate::input) struct PointsKeys {
     /// Whether the last point is followed by the first; `false` where left out.
     pub(in crate::input) closed: Option<Field<bool>>,
     /// Rows of the table that are left out, counted from 1 below the header; say why in a comment.
+    #[schemars(transform = alternatives::rows)]
     pub(in crate::input) except: Option<Field<Vec<Field<u64>>>>,
 }
 
