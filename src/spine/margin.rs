@@ -117,10 +117,10 @@ static GAINS: LazyLock<[[f64; HALF_STEPS]; 3]> = LazyLock::new(|| {
         let mut values = vec![[0.0]; POINTS];
         values[point] = [1.0];
         let response = Curve::interpolating(&parameters, &values);
-        for half_step in 0..HALF_STEPS {
-            let derivatives = response.at(0.5 * half_step as f64);
-            for order in 0..3 {
-                squares[order][half_step] += derivatives[order][0] * derivatives[order][0];
+        for (order, row) in squares.iter_mut().enumerate() {
+            for (half_step, square) in row.iter_mut().enumerate() {
+                let value = response.at(0.5 * half_step as f64)[order][0];
+                *square += value * value;
             }
         }
     }

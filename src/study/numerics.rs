@@ -8,9 +8,12 @@ use crate::motion::{History, Samples, Settings, simulate_with};
 /// Times a second at which the two solutions are compared.
 const COMPARED_HZ: f64 = 50.0;
 
-/// A difference beyond this is looked at closely: near a jump of the load, such as a brake letting
-/// go, it may be one of time, g.
-const CLOSE_LOOK_G: f64 = 0.01;
+/// A difference beyond this is looked at closely: at a jump of the load, such as a brake letting go
+/// or the end of a ramp, it is one of time and not of load, g.
+const CLOSE_LOOK_G: f64 = 1e-4;
+
+/// A load that changes over two samples by so many times what it does over the two on either side jumps.
+const JUMP: f64 = 3.0;
 
 /// Steps of the coarser solution over those of the finer.
 pub(super) const COARSER: f64 = 2.0;
@@ -64,11 +67,11 @@ fn compared(
     coarse: &Samples,
     stride: usize,
 ) -> Numerics {
-    // The last samples of the finer run have no neighbour to look at.
+    // The last samples of the finer run have no neighbours to look at.
     let count = coarse
         .speed_m_s
         .len()
-        .min(fine.speed_m_s.len().saturating_sub(1) / stride);
+        .min(fine.speed_m_s.len().saturating_sub(2) / stride);
     let picked = fine.picked((0..count).map(|i| i * stride));
     let coarse = coarse.picked(0..count);
     let speeds = picked.speed_m_s.iter().zip(&coarse.speed_m_s);
@@ -82,24 +85,28 @@ fn compared(
         for (seat, (a, b)) in a.seats.iter().zip(&b.seats).enumerate() {
             for axis in 0..3 {
                 for i in 0..count {
-                    let plain_g = (a[axis][i] - b[axis][i]).abs();
-                    if plain_g <= numerics.load_g {
+                    let difference_g = (a[axis][i] - b[axis][i]).abs();
+                    if difference_g <= numerics.load_g {
                         continue;
                     }
-                    let close = plain_g > CLOSE_LOOK_G;
-                    let from_g = if close {
-                        let around = i.max(1) * stride - 1..=i.max(1) * stride + 1;
-                        let near = of(&design.poses, &fine.picked(around));
-                        beyond(&near.seats[seat][axis], b[axis][i])
-                    } else {
-                        plain_g
+                    let at_jump = difference_g > CLOSE_LOOK_G && i > 0 && {
+                        let around = fine.picked(i * stride - 2..=i * stride + 2);
+                        jumps(&of(&design.poses, &around).seats[seat][axis])
                     };
-                    numerics.load_g = numerics.load_g.max(from_g);
+                    if !at_jump {
+                        numerics.load_g = difference_g;
+                    }
                 }
             }
         }
     }
     numerics
+}
+
+/// Whether a load jumps at the middle one of five samples.
+fn jumps(load_g: &[f64]) -> bool {
+    let change = |from: usize, to: usize| (load_g[to] - load_g[from]).abs();
+    change(1, 3) > JUMP * (change(0, 1) + change(3, 4))
 }
 
 fn loads_of(
@@ -118,11 +125,4 @@ fn loads_of(
         gravity_m_s2,
         GravityTerm::Included,
     )
-}
-
-/// How far a value lies outside the range of some others.
-fn beyond(others: &[f64], value: f64) -> f64 {
-    let smallest = others.iter().copied().fold(f64::INFINITY, f64::min);
-    let largest = others.iter().copied().fold(f64::NEG_INFINITY, f64::max);
-    (smallest - value).max(value - largest).max(0.0)
 }
