@@ -7,7 +7,7 @@ use std::path::{Path, PathBuf};
 use clap::Args;
 use crestfall::diagnostic::Diagnostic;
 use crestfall::report;
-use crestfall::study::{CaseId, Plan, SeatRecord};
+use crestfall::study::{CaseId, Plan};
 use percent_encoding::{AsciiSet, NON_ALPHANUMERIC, utf8_percent_encode};
 
 use super::progress::ProgressLine;
@@ -75,14 +75,24 @@ fn export_case(
     record.each_seat(|seat| {
         let path = folder.join(format!("car{}-{}.csv", seat.car, encoded(seat.seat)));
         files += 1;
-        write_whole(&path, seat).map_err(|error| not_written(&path, &error))
+        write_whole(&path, |out| report::write_record(seat, out))
     })?;
     Ok(Ok(files))
 }
 
 /// Writes under another name in the same folder, then renames: nobody ever sees half a file.
-fn write_whole(path: &Path, seat: &SeatRecord<'_>) -> io::Result<()> {
-    let folder = path.parent().unwrap_or(Path::new("."));
+pub(super) fn write_whole(
+    path: &Path,
+    write: impl FnOnce(&mut dyn Write) -> io::Result<()>,
+) -> Result<(), Failure> {
+    replace(path, write).map_err(|error| not_written(path, &error))
+}
+
+fn replace(path: &Path, write: impl FnOnce(&mut dyn Write) -> io::Result<()>) -> io::Result<()> {
+    let folder = match path.parent() {
+        Some(folder) if folder != Path::new("") => folder,
+        _ => Path::new("."),
+    };
     let mut builder = tempfile::Builder::new();
     builder.prefix(".crestfall-");
     if let Some(permissions) = permissions() {
@@ -90,7 +100,7 @@ fn write_whole(path: &Path, seat: &SeatRecord<'_>) -> io::Result<()> {
     }
     let mut file = builder.tempfile_in(folder)?;
     let mut out = BufWriter::new(file.as_file_mut());
-    report::write_record(seat, &mut out)?;
+    write(&mut out)?;
     out.flush()?;
     drop(out);
     file.persist(path)?;

@@ -6,6 +6,7 @@ mod check;
 mod export;
 mod output;
 mod progress;
+mod spine;
 
 use std::path::PathBuf;
 use std::process::ExitCode;
@@ -34,6 +35,7 @@ enum Command {
     Check(check::Arguments),
     /// Write the time histories of every case and seat as CSV files
     Export(export::Arguments),
+    Spine(spine::Arguments),
 }
 
 /// Which study, and how much of it.
@@ -94,6 +96,7 @@ pub(crate) fn run() -> Status {
     let result = match &Arguments::parse().command {
         Command::Check(arguments) => check::run(arguments),
         Command::Export(arguments) => export::run(arguments),
+        Command::Spine(arguments) => spine::run(arguments),
     };
     result.unwrap_or_else(|failure| {
         match failure {
