@@ -107,11 +107,17 @@ pub(super) fn times(value: f64) -> String {
 
 /// A part of a whole.
 pub(super) fn percent(part: f64) -> String {
-    format!("{:.0} %", 100.0 * part)
+    format!("{:.0}%", 100.0 * part)
 }
+
+/// Loads below this are as good as none.
+const LEAST_NOISE_G: f64 = 0.001;
 
 /// A load without its sign, such as an error of one.
 pub(super) fn noise(value_g: f64) -> String {
+    if value_g < LEAST_NOISE_G {
+        return format!("less than {LEAST_NOISE_G} g");
+    }
     format!("{} g", significant(value_g, 2))
 }
 
@@ -137,6 +143,8 @@ impl Units {
     /// A length that may be far below a metre, to two digits.
     pub(super) fn fine(self, value_m: f64) -> String {
         match self {
+            Self::Si if value_m < 1e-7 => format!("{value_m:.1e} m"),
+            Self::Us if value_m < 1e-7 => format!("{:.1e} ft", value_m / FOOT_M),
             Self::Si if value_m < 0.1 => format!("{} mm", significant(1e3 * value_m, 2)),
             Self::Si => format!("{} m", significant(value_m, 2)),
             Self::Us if value_m < 0.1 => format!("{} in", significant(12.0 * value_m / FOOT_M, 2)),
@@ -172,7 +180,7 @@ impl Units {
     }
 }
 
-/// A number to so many digits, without an exponent.
+/// A number to at most so many digits, without an exponent or zeros at its end.
 fn significant(value: f64, digits: i32) -> String {
     if value == 0.0 || !value.is_finite() {
         return value.to_string();
@@ -180,7 +188,11 @@ fn significant(value: f64, digits: i32) -> String {
     let exponent = value.abs().log10().floor() as i32;
     let scale = 10f64.powi(digits - 1 - exponent);
     let decimals = (digits - 1 - exponent).max(0) as usize;
-    format!("{:.decimals$}", (value * scale).round() / scale)
+    let text = format!("{:.decimals$}", (value * scale).round() / scale);
+    match text.contains('.') {
+        true => text.trim_end_matches('0').trim_end_matches('.').to_owned(),
+        false => text,
+    }
 }
 
 /// Without a sign before nothing.

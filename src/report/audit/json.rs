@@ -167,8 +167,8 @@ fn remedy(remedy: &Remedy) -> Value {
         Law::Measured { power } => ("measured", power),
     };
     json!({
-        "error_m": number(remedy.error_m),
-        "spacing_m": number(remedy.spacing_m),
+        "error_m": json_or_null(remedy.error_m),
+        "spacing_m": json_or_null(remedy.spacing_m),
         "law": law,
         "power": number(power),
     })

@@ -4,11 +4,14 @@ use crate::report::number::{Units, degrees, fine_degrees, noise as noise_g, perc
 use crate::report::text::layout::{counted, list, new_table, section, wrapped};
 use crate::spine::{
     Audit, Extreme, Finding, FindingKind, FitMethod, FitReport, Floor, Law, NoiseFloor, Points,
-    Range, Remedy, WANTED_G,
+    Range, WANTED_G,
 };
 
 /// Findings of one kind that are told one by one.
 const SHOWN: usize = 10;
+
+/// Spacings between the ends of a track that are worth counting.
+const FEW: f64 = 20.0;
 
 /// Rows far from the curve that are told.
 const ROWS_SHOWN: usize = 5;
@@ -54,7 +57,7 @@ fn findings(audit: &Audit, units: Units) -> String {
                 "{more} more like these; `--format json` has them all"
             ));
         }
-        lines.extend(way_out(finding.kind).map(str::to_owned));
+        lines.extend(way_out(finding.kind).map(|way| format!("hint: {way}")));
     }
     list("findings", lines.into_iter())
 }
@@ -102,7 +105,8 @@ fn told_finding(finding: &Finding, units: Units) -> String {
             "nothing is known of the points' error, nor of the noise it makes".to_owned()
         }
         FindingKind::NoiseFloor => format!(
-            "the points' error alone makes up to {} of load, more than {} on too much of the track",
+            "the points' error alone makes up to {} of load, and more than {} on more than a twentieth of \
+             the track",
             noise_g(size),
             noise_g(against)
         ),
@@ -189,8 +193,8 @@ fn shape(audit: &Audit, units: Units) -> Vec<String> {
         format!(" and {} in bank", degrees(b.abs()))
     });
     let spacings = match ends.spacings {
-        Some(spacings) => format!(" ({} median spacings)", times(spacings)),
-        None => String::new(),
+        Some(spacings) if spacings < FEW => format!(" ({} median spacings)", times(spacings)),
+        _ => String::new(),
     };
     let who = if audit.closed {
         "the last point and the first"
@@ -268,7 +272,7 @@ fn fit_line(report: &FitReport, units: Units) -> String {
             "interpolated; nothing is known of the points' error".to_owned()
         }
         (FitMethod::Exact, Some(error)) => {
-            format!("interpolated, though the points have an error of {error} per coordinate{roll}")
+            format!("interpolated; the points have an error of {error} per coordinate{roll}")
         }
         (FitMethod::Within, error) => {
             format!(
@@ -330,23 +334,35 @@ fn floor(floor: &Floor, units: Units) -> String {
 }
 
 fn remedy(noise: &NoiseFloor, units: Units) -> Option<String> {
-    let Remedy {
-        error_m,
-        spacing_m,
-        law,
-    } = noise.remedy?;
-    let (error, spacing) = (units.fine(error_m), units.fine(spacing_m));
-    Some(match law {
-        Law::Interpolated => format!(
-            "under {} on 95 % of the track with points of about {error} error (noise goes as error/spacing2); \
-             or smooth them: `fit: auto`",
-            noise_g(WANTED_G)
-        ),
+    if noise.spine.most_g <= WANTED_G {
+        return None;
+    }
+    let goal = format!("under {} on 95% of the track", noise_g(WANTED_G));
+    let Some(remedy) = noise.remedy else {
+        return Some(format!(
+            "{goal}: not by better points alone; look at the findings first"
+        ));
+    };
+    let error = remedy
+        .error_m
+        .map(|e| format!("with points of about {} error", units.fine(e)));
+    let law = match remedy.law {
+        Law::Interpolated => {
+            let error = error.map_or_else(String::new, |error| format!("{error}, or "));
+            let law = "interpolated noise goes as error/spacing2";
+            return Some(format!("{goal}: {error}by smoothing: `fit: auto` ({law})"));
+        }
         Law::Measured { power } => format!(
-            "under {} on 95 % of the track with points of about {error} error, or about every {spacing} \
-             (noise goes as error^{}; measured by fitting this curve anew with a quarter of the error)",
-            noise_g(WANTED_G),
+            "noise goes as error^{}; measured by fitting this curve anew with a quarter of the error",
             times(power)
         ),
+    };
+    let spacing = remedy
+        .spacing_m
+        .map(|s| format!("with a point about every {}", units.fine(s)));
+    let ways: Vec<String> = [error, spacing].into_iter().flatten().collect();
+    Some(match ways.is_empty() {
+        true => format!("{goal}: not even with a thousandth of the error ({law})"),
+        false => format!("{goal}: {} ({law})", ways.join(", or ")),
     })
 }

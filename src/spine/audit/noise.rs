@@ -49,10 +49,11 @@ pub struct Floor {
 /// Either of two changes of the points, each by itself.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Remedy {
-    /// Standard deviation of a point of the centre line, m, at the same spacing.
-    pub error_m: f64,
-    /// Spacing, m, at the same error.
-    pub spacing_m: f64,
+    /// Standard deviation of a point of the centre line, m, at the same spacing; none below a
+    /// thousandth of its own, where the law is not to be trusted.
+    pub error_m: Option<f64>,
+    /// Spacing, m, at the same error; none beyond a thousandth or a thousandfold.
+    pub spacing_m: Option<f64>,
     /// Where the numbers come from.
     pub law: Law,
 }
@@ -168,8 +169,9 @@ fn floor_of(noise: &Noise, parameters: &[f64], gain: f64) -> Vec<f64> {
 /// Part of the error that is tried to see how the noise goes with it.
 const TRIED: f64 = 0.25;
 
-/// Powers of the error below this are no way to less noise.
-const LEAST_POWER: f64 = 0.02;
+/// Powers of the error outside of these are no law of noise: below, less error is no way to less
+/// noise; above, something else than the points' error makes the margin.
+const POWERS: std::ops::RangeInclusive<f64> = 0.02..=2.0;
 
 fn remedy(
     spine: &Spine,
@@ -191,9 +193,11 @@ fn remedy(
             (power, 0.5 * power, Law::Measured { power })
         }
     };
+    let trusted = |factor: &f64| (1e-3..=1e3).contains(factor);
+    let factor = |power: f64| Some(part.powf(1.0 / power)).filter(trusted);
     Some(Remedy {
-        error_m: error_m * part.powf(1.0 / power),
-        spacing_m: survey.median_m() * part.powf(1.0 / spacing_power),
+        error_m: factor(power).map(|f| f * error_m),
+        spacing_m: factor(spacing_power).map(|f| f * survey.median_m()),
         law,
     })
 }
@@ -217,7 +221,7 @@ fn measured_power(
     let noise = fit::path_noise(&centre_m, spine.is_closed(), tried_m)?;
     let tried_g = most(floor_of(&noise, &fit::chords(&centre_m), gain));
     let power = (tried_g / own.most_g).ln() / TRIED.ln();
-    (power > LEAST_POWER).then_some(power)
+    POWERS.contains(&power).then_some(power)
 }
 
 /// SplitMix64 (Steele, Lea & Flood 2014): the same numbers on every run.
