@@ -14,7 +14,7 @@ use super::{Failure, Format, Status, Units, export, output};
 /// Audit a spine: extremes, jumps, faults of its points, its fit and the noise that leaves
 ///
 /// Exit status: 0 nothing found; 1 findings (a curvature or roll rate that jumps, gaps, points almost
-/// on one another, kinks, blunders, a stated error ten times what the points show, points whose error
+/// on one another, kinks, blunders, a stated error beyond ten times or below a third of what the points show, points whose error
 /// is not known, a noise floor above 0.05 g on more than a twentieth of the track); 2 the inputs or the
 /// command line are wrong, or a result could not be written.
 #[derive(Args)]

@@ -66,6 +66,8 @@ pub enum FindingKind {
     Blunder,
     /// A stated error, m, more than 10 times the one that cross-validation finds.
     ErrorOverstated,
+    /// A stated error, m, less than a third of the one that cross-validation finds.
+    ErrorUnderstated,
     /// Nothing is known of the error of points that are interpolated.
     ErrorUnknown,
     /// Largest noise floor, g; against the one that is wanted, exceeded on more than a twentieth of the
@@ -92,6 +94,10 @@ pub struct Finding {
 /// neighbours share, which cross-validation cannot see.
 const OVERSTATED: f64 = 10.0;
 
+/// Part of the found error below which a stated one is a finding: the curve follows the noise, and its
+/// margin does not tell.
+const UNDERSTATED: f64 = 1.0 / 3.0;
+
 /// Audits the spine of a track, with noise at a speed above 0.
 pub fn audit(track: &Track, spine: &Spine, speed_m_s: f64) -> Audit {
     let (corners, mut findings) = jumps::between_pieces(spine);
@@ -117,7 +123,7 @@ pub fn audit(track: &Track, spine: &Spine, speed_m_s: f64) -> Audit {
         findings.extend(survey.blunders(&fitted.report));
         audit.cross_validated_m = noise::cross_validated(table);
         audit.noise = noise::floor(spine, &survey, &fitted.report, speed_m_s);
-        findings.extend(overstated(&fitted.report, audit.cross_validated_m));
+        findings.extend(misstated(&fitted.report, audit.cross_validated_m));
         findings.extend(noise::finding(audit.noise.as_ref()));
     } else {
         audit.corners = Some(corners);
@@ -126,11 +132,19 @@ pub fn audit(track: &Track, spine: &Spine, speed_m_s: f64) -> Audit {
     audit
 }
 
-/// A stated error far beyond what the points show smooths away what they say.
-fn overstated(report: &FitReport, found_m: Option<f64>) -> Option<Finding> {
+/// A stated error far beyond what the points show smooths away what they say; one far below takes
+/// their noise for the track.
+fn misstated(report: &FitReport, found_m: Option<f64>) -> Option<Finding> {
     let (stated_m, found_m) = (report.error_m?, found_m?);
-    (stated_m > OVERSTATED * found_m).then_some(Finding {
-        kind: FindingKind::ErrorOverstated,
+    let kind = if stated_m > OVERSTATED * found_m {
+        FindingKind::ErrorOverstated
+    } else if stated_m < UNDERSTATED * found_m {
+        FindingKind::ErrorUnderstated
+    } else {
+        return None;
+    };
+    Some(Finding {
+        kind,
         row: None,
         station_m: None,
         size: Some(stated_m),

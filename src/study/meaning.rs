@@ -100,6 +100,7 @@ fn off_the_curve(table: &PointTable, blunder: &Outlier, too_many: bool) -> Diagn
     if too_many {
         return mistake.hint("so many rows are like this that the stated error is too small");
     }
+    let mistake = mistake.hint("where rows side by side are like this, the track itself may turn too suddenly for its points: state a larger error there");
     mistake.hint(format!(
         "correct the row, or leave it out with `except: [{row}]` and say why in a comment"
     ))

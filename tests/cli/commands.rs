@@ -5,6 +5,7 @@ mod export;
 mod fixture;
 mod rules;
 mod speed_rules;
+mod spine;
 mod wrong_input;
 
 use std::fs;

@@ -17,8 +17,8 @@
 //! `corners` is null for points; `points`, `fit` and `noise` are null for elements. `most_g` is what
 //! nineteen twentieths of the track lie below, `above` the part of it beyond `wanted_g`; loads of noise are
 //! two standard deviations. The kinds of findings are `curvature-jump` and `roll-rate-jump` (1/m and
-//! rad/m), `gap`, `near-duplicate`, `blunder` and `error-overstated` (m), `kink` (deg), `noise-floor` (g)
-//! and `error-unknown`; `against` is what `size` was held against, in the same unit.
+//! rad/m), `gap`, `near-duplicate`, `blunder`, `error-overstated` and `error-understated` (m), `kink` (deg),
+//! `noise-floor` (g) and `error-unknown`; `against` is what `size` was held against, in the same unit.
 
 use serde_json::{Value, json};
 
@@ -183,6 +183,7 @@ fn finding(finding: &Finding) -> Value {
         FindingKind::Kink => ("kink", Some("deg")),
         FindingKind::Blunder => ("blunder", Some("m")),
         FindingKind::ErrorOverstated => ("error-overstated", Some("m")),
+        FindingKind::ErrorUnderstated => ("error-understated", Some("m")),
         FindingKind::ErrorUnknown => ("error-unknown", None),
         FindingKind::NoiseFloor => ("noise-floor", Some("g")),
     };

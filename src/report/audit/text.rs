@@ -101,6 +101,12 @@ fn told_finding(finding: &Finding, units: Units) -> String {
             times(size / against),
             units.fine(against)
         ),
+        FindingKind::ErrorUnderstated => format!(
+            "the stated error of {} is far below the {} that the points show: their noise is taken for \
+             the track, and no margin tells",
+            units.fine(size),
+            units.fine(against)
+        ),
         FindingKind::ErrorUnknown => {
             "nothing is known of the points' error, nor of the noise it makes".to_owned()
         }
@@ -131,6 +137,7 @@ fn way_out(kind: FindingKind) -> Option<&'static str> {
         FindingKind::ErrorUnknown => {
             Some("use `fit: auto`, or state the error with `fit: {within: ...}`")
         }
+        FindingKind::ErrorUnderstated => Some("state a larger error, or use `fit: auto`"),
         FindingKind::ErrorOverstated => Some("state a smaller error, or use `fit: auto`"),
         FindingKind::CurvatureJump | FindingKind::RollRateJump | FindingKind::NoiseFloor => None,
     }
