@@ -100,10 +100,14 @@ fn off_the_curve(table: &PointTable, blunder: &Outlier, too_many: bool) -> Diagn
     if too_many {
         return mistake.hint("so many rows are like this that the stated error is too small");
     }
-    let mistake = mistake.hint("where rows side by side are like this, the track itself may turn too suddenly for its points: state a larger error there");
-    mistake.hint(format!(
-        "correct the row, or leave it out with `except: [{row}]` and say why in a comment"
-    ))
+    mistake
+        .hint(format!(
+            "correct the row, or leave it out with `except: [{row}]` and say why in a comment"
+        ))
+        .hint(
+            "where a straight meets an arc at once, no row is wrong: give the points larger errors \
+             in a column `error_mm`",
+        )
 }
 
 fn check_finish(goal: &Goal, scenario: &Scenario) -> Option<Diagnostic> {
