@@ -3,10 +3,14 @@
 //! One file a command. Results go to standard output, mistakes and progress to standard error.
 
 mod check;
+mod completions;
 mod export;
+mod new;
 mod output;
 mod progress;
+mod schema;
 mod spine;
+mod whole_file;
 
 use std::path::PathBuf;
 use std::process::ExitCode;
@@ -36,12 +40,19 @@ enum Command {
     /// Write the time histories of every case and seat as CSV files
     Export(export::Arguments),
     Spine(spine::Arguments),
+    /// Write a small study to start from
+    New(new::Arguments),
+    /// Print the JSON Schema of a kind of file, for editors
+    Schema(schema::Arguments),
+    /// Print the completions of a shell
+    Completions(completions::Arguments),
 }
 
 /// Which study, and how much of it.
 #[derive(Args)]
 struct StudyArguments {
     /// The study file
+    #[arg(value_name = "STUDY")]
     study: PathBuf,
     /// Only this variant; may be given several times
     #[arg(long = "variant", value_name = "NAME")]
@@ -97,6 +108,9 @@ pub(crate) fn run() -> Status {
         Command::Check(arguments) => check::run(arguments),
         Command::Export(arguments) => export::run(arguments),
         Command::Spine(arguments) => spine::run(arguments),
+        Command::New(arguments) => new::run(arguments),
+        Command::Schema(arguments) => schema::run(arguments),
+        Command::Completions(arguments) => completions::run(arguments),
     };
     result.unwrap_or_else(|failure| {
         match failure {

@@ -9,7 +9,7 @@ use crestfall::input;
 use crestfall::report;
 use crestfall::spine::{Spine, audit};
 
-use super::{Failure, Format, Status, Units, export, output};
+use super::{Failure, Format, Status, Units, output, whole_file};
 
 /// Audit a spine: extremes, jumps, faults of its points, its fit and the noise that leaves
 ///
@@ -40,7 +40,10 @@ pub(super) fn run(arguments: &Arguments) -> Result<Status, Failure> {
     let spine = Spine::from_track(&track).map_err(Failure::Input)?;
     let audit = audit(&track, &spine, arguments.speed);
     if let Some(path) = &arguments.csv {
-        export::write_whole(path, |out| report::write_spine(&spine, out))?;
+        let written = whole_file::replace(path, |out| report::write_spine(&spine, out));
+        written.map_err(|error| {
+            Failure::Output(format!("{} could not be written: {error}", path.display()))
+        })?;
     }
     output::print(&match arguments.format {
         Format::Text => report::spine_text(&audit, arguments.units.into()),

@@ -33,6 +33,8 @@ mod written;
 #[cfg(test)]
 mod quantity_tests;
 #[cfg(test)]
+mod schema_tests;
+#[cfg(test)]
 mod tests;
 
 pub use argument::speed_m_s;
