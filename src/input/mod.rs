@@ -5,6 +5,7 @@
 //! nothing of geometry or physics.
 
 mod access;
+mod argument;
 mod decode;
 mod dimension;
 mod document;
@@ -36,6 +37,7 @@ mod schema_tests;
 #[cfg(test)]
 mod tests;
 
+pub use argument::speed_m_s;
 pub use envelope::{
     Axis, Between, Demand, Document, Envelope, Filter, GravityTerm, NameAt, Rule, RuleKind, Scale,
     Sign, SpeedBounds, StationRange, Status, Stop, Sustained, Where,

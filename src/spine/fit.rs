@@ -160,6 +160,27 @@ impl Fitted {
         self.parameters.jets(interval, d)[0][0]
     }
 
+    /// Stations of the points of the centre line, m.
+    pub(super) fn stations_of(&self, centre: &[Vector3<f64>]) -> Vec<f64> {
+        let parameters = chords(centre);
+        let stretched = self.length_m / self.path.knots()[self.path.knots().len() - 1];
+        parameters
+            .iter()
+            .map(|&p| {
+                // The parameter is all but the arc length, so that each step squares the error.
+                let mut s = p * stretched;
+                for _ in 0..20 {
+                    let off = p - self.parameter_at(s.min(self.length_m * (1.0 - 1e-12)));
+                    s = (s + off).clamp(0.0, self.length_m);
+                    if off.abs() < 1e-10 {
+                        break;
+                    }
+                }
+                s
+            })
+            .collect()
+    }
+
     pub(super) fn length_m(&self) -> f64 {
         self.length_m
     }
@@ -335,7 +356,7 @@ impl Knots {
 }
 
 /// The centre line of any column set.
-fn centre_line(columns: &Columns) -> Vec<Vector3<f64>> {
+pub(super) fn centre_line(columns: &Columns) -> Vec<Vector3<f64>> {
     match columns {
         Columns::Bank { centre_m, .. } | Columns::Up { centre_m, .. } => centre_m.clone(),
         Columns::Rails { left_m, right_m } => left_m
@@ -576,6 +597,44 @@ impl<const N: usize> Laid<N> {
             studentised: &self.studentised,
         }
     }
+}
+
+/// Cumulative chords of points, which are the parameters of the curve through them.
+pub(super) fn chords(centre: &[Vector3<f64>]) -> Vec<f64> {
+    Knots::new(centre, false).chord_m
+}
+
+/// What an error of the points leaves open of a curve smoothed to it.
+pub(super) fn path_noise(centre: &[Vector3<f64>], closed: bool, error_m: f64) -> Option<Noise> {
+    let knots = Knots::new(centre, closed);
+    let wanted = Wanted {
+        fit: Fit::Within {
+            error_m,
+            bank_error_rad: None,
+        },
+        stated: Some(error_m),
+        rounding: None,
+        weights: &vec![1.0; centre.len()],
+        across: true,
+    };
+    knots
+        .laid(&components(centre), &wanted)
+        .ok()
+        .map(|laid| laid.noise)
+}
+
+/// Standard deviation of a point of the centre line that cross-validation finds, m.
+pub(super) fn cross_validated_error(table: &PointTable) -> Option<f64> {
+    let centre = centre_line(&table.columns);
+    let knots = Knots::new(&centre, table.closed);
+    let wanted = Wanted {
+        fit: Fit::Auto,
+        stated: None,
+        rounding: None,
+        weights: &vec![1.0; centre.len()],
+        across: true,
+    };
+    knots.laid(&components(&centre), &wanted).ok()?.error
 }
 
 /// The equations of a fit could not be solved.

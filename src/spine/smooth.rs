@@ -31,7 +31,8 @@ pub(super) struct Smooth<const N: usize> {
     pub(super) spread: Spread,
     /// Standard deviation of a point of weight 1, per coordinate, stated or found.
     pub(super) error: f64,
-    /// Residual of each point (across the curve where asked) over its own standard deviation.
+    /// Residual of each point (across the curve where asked), less the curve's bias near its ends, over
+    /// its own standard deviation.
     pub(super) studentised: Vec<f64>,
     /// Length of each residual.
     pub(super) residuals: Vec<f64>,
@@ -231,15 +232,6 @@ impl<'a, const N: usize> Trials<'a, N> {
         let residuals = (0..n)
             .map(|i| self.residual(&trial.smoothed, i).norm())
             .collect::<Vec<_>>();
-        let own = |i: usize| {
-            let left = (1.0 - trial.smoothed.leverages[i + self.repeated]).max(1e-3);
-            error * (left / self.data.weights[i]).sqrt()
-        };
-        let studentised = residuals
-            .iter()
-            .enumerate()
-            .map(|(i, r)| r / own(i))
-            .collect();
         let curve = match self.data.period {
             None => trial.smoothed.curve(),
             Some(_) => trial.smoothed.lap(self.repeated, n),
@@ -249,10 +241,20 @@ impl<'a, const N: usize> Trials<'a, N> {
             Some(_) => None,
         };
         let spread = Spread {
-            posterior: trial.smoothed.posterior,
+            posterior: trial.smoothed.posterior.clone(),
             variance: error * error,
             ends,
         };
+        // Near the ends the curve is off by its bias, which is no fault of the points.
+        let own = |i: usize| {
+            let left = (1.0 - trial.smoothed.leverages[i + self.repeated]).max(1e-3);
+            error * (left / self.data.weights[i]).sqrt()
+        };
+        let beyond_bias = |(i, r): (usize, &f64)| {
+            let bias = spread.bias(self.data.parameters[i], 0);
+            (r - bias).max(0.0) / own(i)
+        };
+        let studentised = residuals.iter().enumerate().map(beyond_bias).collect();
         Ok(Smooth {
             curve,
             spread,

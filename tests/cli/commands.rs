@@ -7,6 +7,7 @@ mod fixture;
 mod new;
 mod rules;
 mod speed_rules;
+mod spine;
 mod wrong_input;
 
 use std::io::Read;

@@ -5,7 +5,7 @@ use comfy_table::{ContentArrangement, Table, presets};
 /// No line is longer.
 const WIDTH: u16 = 100;
 
-pub(super) fn new_table(header: &[&str]) -> Table {
+pub(in crate::report) fn new_table(header: &[&str]) -> Table {
     let mut table = Table::new();
     table
         .load_style(presets::NOTHING)
@@ -15,7 +15,7 @@ pub(super) fn new_table(header: &[&str]) -> Table {
     table
 }
 
-pub(super) fn section(title: &str, table: &Table) -> String {
+pub(in crate::report) fn section(title: &str, table: &Table) -> String {
     let mut text = format!("\n{title}\n");
     for line in table.lines() {
         text += " ";
@@ -25,7 +25,7 @@ pub(super) fn section(title: &str, table: &Table) -> String {
     text
 }
 
-pub(super) fn list(title: &str, items: impl Iterator<Item = String>) -> String {
+pub(in crate::report) fn list(title: &str, items: impl Iterator<Item = String>) -> String {
     let items: String = items.map(|i| wrapped(&i, "  - ", "    ") + "\n").collect();
     if items.is_empty() {
         return items;
@@ -33,7 +33,7 @@ pub(super) fn list(title: &str, items: impl Iterator<Item = String>) -> String {
     format!("\n{title}\n{items}")
 }
 
-pub(super) fn wrapped(text: &str, first: &str, rest: &str) -> String {
+pub(in crate::report) fn wrapped(text: &str, first: &str, rest: &str) -> String {
     let options = textwrap::Options::new(WIDTH.into())
         .initial_indent(first)
         .subsequent_indent(rest)
@@ -41,7 +41,7 @@ pub(super) fn wrapped(text: &str, first: &str, rest: &str) -> String {
     textwrap::fill(text, options)
 }
 
-pub(super) fn counted(count: usize, what: &str) -> String {
+pub(in crate::report) fn counted(count: usize, what: &str) -> String {
     match count {
         1 => format!("1 {what}"),
         _ => format!("{count} {what}s"),
