@@ -1,10 +1,13 @@
 //! Saltglass as built: 2 mm of survey noise on the eased spine, and a slip of the pen in one row.
 
 use std::fs;
+use std::path::Path;
 
 use crestfall::envelope::Outcome;
-use crestfall::input::read_track;
+use crestfall::input::{read_study, read_track};
+use crestfall::motion::RunEnd;
 use crestfall::spine::{FitMethod, FitReport, Spine};
+use crestfall::study::Assessment;
 
 use crate::demo::*;
 
@@ -43,7 +46,7 @@ fn it_is_as_its_comments_tell_and_stays_clear_of_itself() {
     expect_clear(AS_BUILT);
 }
 
-/// The landmarks are those of the eased track, to the centimetre: a survey starts where the track does.
+/// The landmarks are those of the eased track, to 0.1 m: a survey starts where the track does.
 #[test]
 fn landmarks_lie_where_those_of_the_eased_track_do() {
     let (eased, as_built) = (spine(EASED), spine(AS_BUILT));
@@ -82,19 +85,68 @@ fn exact_fit_recovers_the_eased_spine() {
     assert!(held / count > 0.95);
 }
 
-/// The fit of the table under another `fit`, with or without the row that is left out.
-fn refitted(fit: &str, except: bool) -> FitReport {
+/// The study's folder again, with another `fit` of the survey, with or without the row that is left out.
+fn refitted_folder(fit: &str, except: bool) -> tempfile::TempDir {
     let folder = tempfile::tempdir().unwrap();
-    let text = fs::read_to_string(path(AS_BUILT)).unwrap();
-    let mut text = text.replace("fit: {within: 2 mm}", &format!("fit: {fit}"));
+    let (saltglass, envelopes) = ("demo-tracks/saltglass", "envelopes");
+    for part in [saltglass, envelopes] {
+        let from = Path::new(env!("CARGO_MANIFEST_DIR")).join(part);
+        fs::create_dir_all(folder.path().join(part)).unwrap();
+        for file in fs::read_dir(from).unwrap().map(Result::unwrap) {
+            let to = folder.path().join(part).join(file.file_name());
+            fs::copy(file.path(), to).unwrap();
+        }
+    }
+    let track = folder.path().join("demo-tracks").join(AS_BUILT);
+    let mut text = fs::read_to_string(&track).unwrap();
+    text = text.replace("fit: {within: 2 mm}", &format!("fit: {fit}"));
     if !except {
         text = text.replace("  except: [701]\n", "");
     }
-    let (track, table) = (folder.path().join("as-built.track.yaml"), "as-built.csv");
-    fs::write(&track, text).unwrap();
-    fs::copy(path("saltglass").join(table), folder.path().join(table)).unwrap();
-    let spine = Spine::from_track(&read_track(&track).unwrap()).unwrap();
+    fs::write(track, text).unwrap();
+    folder
+}
+
+fn refitted(fit: &str, except: bool) -> FitReport {
+    let folder = refitted_folder(fit, except);
+    let track = read_track(&folder.path().join("demo-tracks").join(AS_BUILT)).unwrap();
+    let spine = Spine::from_track(&track).unwrap();
     spine.fit().unwrap().clone()
+}
+
+/// The words of the track's comment. Side friction grows with the load across: interpolated noise brakes.
+#[test]
+fn through_every_point_the_train_is_braked_by_noise() {
+    let folder = refitted_folder("exact", true);
+    let rough = read_study(&folder.path().join("demo-tracks").join(STUDY)).unwrap();
+    let (rough, smooth) = (
+        assessed(&rough, &["as-built"]),
+        assessed(&study(STUDY), &["as-built"]),
+    );
+    for ((name, rough), (_, smooth)) in runs(&rough).into_iter().zip(runs(&smooth)) {
+        let fastest = |run: &crestfall::study::Run| run.speed_m_s.unwrap().max.value;
+        assert!(fastest(rough) < fastest(smooth), "{name}");
+        assert_eq!(
+            name.contains("cold"),
+            rough.end != RunEnd::Completed,
+            "{name}"
+        );
+    }
+    assert!(worst_of(&rough, "no-trim") < worst_of(&smooth, "no-trim") - 0.03);
+}
+
+/// The largest utilisation of `z-down` in a scenario.
+fn worst_of(assessment: &Assessment, scenario: &str) -> f64 {
+    let case = assessment
+        .cases
+        .iter()
+        .find(|c| c.scenario == scenario)
+        .unwrap();
+    let rules = case.seats.iter().flat_map(|seat| &seat.rules);
+    let used = rules
+        .filter(|r| r.judgement.rule == "z-down")
+        .map(|r| r.judgement.utilisation.unwrap());
+    used.fold(f64::NAN, f64::max)
 }
 
 /// The slip lifts the right rail by 36 mm and the middle by 18 mm; the track climbs there by less than 12 deg,
