@@ -1,17 +1,16 @@
 //! `crestfall export`: the time histories of every case and seat, one CSV file each.
 
-use std::fs::{self, Permissions};
-use std::io::{self, BufWriter, Write};
 use std::path::{Path, PathBuf};
+use std::{fs, io};
 
 use clap::Args;
 use crestfall::diagnostic::Diagnostic;
 use crestfall::report;
-use crestfall::study::{CaseId, Plan, SeatRecord};
+use crestfall::study::{CaseId, Plan};
 use percent_encoding::{AsciiSet, NON_ALPHANUMERIC, utf8_percent_encode};
 
 use super::progress::ProgressLine;
-use super::{Failure, Status, StudyArguments, output};
+use super::{Failure, Status, StudyArguments, output, whole_file};
 
 /// What a name keeps as it is, besides letters and digits.
 const KEPT: &AsciiSet = &NON_ALPHANUMERIC
@@ -75,38 +74,10 @@ fn export_case(
     record.each_seat(|seat| {
         let path = folder.join(format!("car{}-{}.csv", seat.car, encoded(seat.seat)));
         files += 1;
-        write_whole(&path, seat).map_err(|error| not_written(&path, &error))
+        whole_file::replace(&path, |out| report::write_record(seat, out))
+            .map_err(|error| not_written(&path, &error))
     })?;
     Ok(Ok(files))
-}
-
-/// Writes under another name in the same folder, then renames: nobody ever sees half a file.
-fn write_whole(path: &Path, seat: &SeatRecord<'_>) -> io::Result<()> {
-    let folder = path.parent().unwrap_or(Path::new("."));
-    let mut builder = tempfile::Builder::new();
-    builder.prefix(".crestfall-");
-    if let Some(permissions) = permissions() {
-        builder.permissions(permissions);
-    }
-    let mut file = builder.tempfile_in(folder)?;
-    let mut out = BufWriter::new(file.as_file_mut());
-    report::write_record(seat, &mut out)?;
-    out.flush()?;
-    drop(out);
-    file.persist(path)?;
-    Ok(())
-}
-
-/// Those of a plain new file, which the user's mask narrows; a temporary file alone would be private.
-#[cfg(unix)]
-fn permissions() -> Option<Permissions> {
-    use std::os::unix::fs::PermissionsExt;
-    Some(Permissions::from_mode(0o666))
-}
-
-#[cfg(not(unix))]
-fn permissions() -> Option<Permissions> {
-    None
 }
 
 fn not_written(path: &Path, error: &io::Error) -> Failure {

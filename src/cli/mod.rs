@@ -3,9 +3,13 @@
 //! One file a command. Results go to standard output, mistakes and progress to standard error.
 
 mod check;
+mod completions;
 mod export;
+mod new;
 mod output;
 mod progress;
+mod schema;
+mod whole_file;
 
 use std::path::PathBuf;
 use std::process::ExitCode;
@@ -34,12 +38,19 @@ enum Command {
     Check(check::Arguments),
     /// Write the time histories of every case and seat as CSV files
     Export(export::Arguments),
+    /// Write a small study to start from
+    New(new::Arguments),
+    /// Print the JSON Schema of a kind of file, for editors
+    Schema(schema::Arguments),
+    /// Print the completions of a shell
+    Completions(completions::Arguments),
 }
 
 /// Which study, and how much of it.
 #[derive(Args)]
 struct StudyArguments {
     /// The study file
+    #[arg(value_name = "STUDY")]
     study: PathBuf,
     /// Only this variant; may be given several times
     #[arg(long = "variant", value_name = "NAME")]
@@ -94,6 +105,9 @@ pub(crate) fn run() -> Status {
     let result = match &Arguments::parse().command {
         Command::Check(arguments) => check::run(arguments),
         Command::Export(arguments) => export::run(arguments),
+        Command::New(arguments) => new::run(arguments),
+        Command::Schema(arguments) => schema::run(arguments),
+        Command::Completions(arguments) => completions::run(arguments),
     };
     result.unwrap_or_else(|failure| {
         match failure {

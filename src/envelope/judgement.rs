@@ -137,6 +137,8 @@ pub(super) enum Measure {
 #[derive(Debug)]
 pub(super) struct Verdict {
     pub(super) measure: Measure,
+    /// Uncertainty of the utilisation.
+    pub(super) band: f64,
     pub(super) governing: Option<Spell>,
     pub(super) findings: Vec<Breach>,
     pub(super) ignored: Vec<Ignored>,
@@ -158,7 +160,7 @@ impl Judgement {
         verdict: Result<Verdict, String>,
         run: &RunState,
     ) -> Self {
-        let band = 0.0;
+        let band = verdict.as_ref().map_or(0.0, |verdict| verdict.band);
         let run_reason = match run {
             RunState::Complete => None,
             RunState::Incomplete(reason) => Some(reason.clone()),

@@ -17,6 +17,8 @@ pub struct SpeedRecord {
     pub speed_m_s: Vec<f64>,
     /// Nodes at which the train comes to rest or reverses; the release is none.
     pub stops: Vec<usize>,
+    /// Error of numerics that any speed may have, m/s.
+    pub numerical_m_s: f64,
 }
 
 /// Holds the stretches of a record against bounds, the largest speed multiplied by a factor.
@@ -52,7 +54,7 @@ pub(super) fn assess(
             tally.weigh_stops(stop, &stops, &nodes, under_way);
         }
     }
-    Ok(tally.verdict())
+    Ok(tally.verdict(record.numerical_m_s))
 }
 
 /// A moment of the run.
@@ -234,15 +236,23 @@ impl Tally {
         }
     }
 
-    fn verdict(mut self) -> Verdict {
+    fn verdict(mut self, numerical_m_s: f64) -> Verdict {
         self.findings.sort_by(|a, b| a.from_s.total_cmp(&b.from_s));
         let measure = match self.governing {
             Some(spell) if spell.utilisation.is_infinite() => Measure::Broken,
             Some(spell) if self.measured => Measure::Utilisation(spell.utilisation),
             _ => Measure::Kept,
         };
+        let band = match (measure, self.governing) {
+            // v/max and min/v change by this part of themselves, or of the limit.
+            (Measure::Utilisation(u), Some(spell)) => {
+                numerical_m_s * (1.0 / spell.limit.abs()).max(u / spell.load.abs())
+            }
+            _ => 0.0,
+        };
         Verdict {
             measure,
+            band,
             governing: self.governing,
             findings: self.findings,
             ignored: Vec::new(),

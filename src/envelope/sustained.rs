@@ -30,30 +30,86 @@ pub(super) fn assess(
     let load_g = &record.axes_g[rule.axis as usize];
     let curve = LimitCurve::new(rule, factor);
     check_length(stretches, &curve, record.rate_hz)?;
+    let held = Held {
+        rule,
+        curve: &curve,
+        stretches,
+    };
     let clock = Clock {
         rate_hz: record.rate_hz,
         delay_s: record.delay_s,
     };
+    let band = held.band(load_g, record);
     let mut whole = Verdict {
         measure: Measure::Utilisation(0.0),
+        band,
         governing: None,
         findings: Vec::new(),
         ignored: Vec::new(),
     };
     for &stretch in stretches {
         let signal = Signal::new(load_g, rule.demand, stretch);
-        whole.append(assess_stretch(&signal, &curve, clock));
+        let stretched = tally(&signal, &curve, clock.rate_hz, 1.0 - band).result(&signal, clock);
+        whole.append(stretched);
     }
     let used = whole.governing.map_or(0.0, |spell| spell.utilisation);
     whole.measure = Measure::Utilisation(used);
     Ok(whole)
 }
 
-fn assess_stretch(signal: &Signal<'_>, curve: &LimitCurve, clock: Clock) -> Stretched {
-    let mut tally = Tally::new(curve, clock.rate_hz);
-    let least_level = curve.least() * assured(signal, curve, clock.rate_hz).clamp(0.0, 1.0);
+/// A rule and where it holds.
+struct Held<'a> {
+    rule: &'a Sustained,
+    curve: &'a LimitCurve,
+    stretches: &'a [Stretch],
+}
+
+impl Held<'_> {
+    /// What the errors of a record make of the utilisation.
+    ///
+    /// An error that any load may have moves it by no more than that over the least limit. Errors
+    /// that vary along the record move it as far as the record does with all of them for the worse,
+    /// or all for the better.
+    fn band(&self, load_g: &[f64], record: &Filtered) -> f64 {
+        let numerical = record.numerical_g / self.curve.least();
+        let Some(margin_g) = &record.margin_g else {
+            return numerical;
+        };
+        let margin_g = &margin_g[self.rule.axis as usize];
+        let moved = |side: f64| {
+            let pairs = load_g.iter().zip(margin_g);
+            let load_g = pairs
+                .map(|(load, margin)| load + side * margin)
+                .collect::<Vec<_>>();
+            self.used(&load_g, record.rate_hz)
+        };
+        let used = self.used(load_g, record.rate_hz);
+        numerical + (moved(1.0) - used).abs().max((moved(-1.0) - used).abs())
+    }
+
+    /// The utilisation of a record.
+    fn used(&self, load_g: &[f64], rate_hz: f64) -> f64 {
+        let of_stretch = |&stretch: &Stretch| {
+            let signal = Signal::new(load_g, self.rule.demand, stretch);
+            let tally = tally(&signal, self.curve, rate_hz, f64::INFINITY);
+            tally.governing.map_or(0.0, |best| best.utilisation)
+        };
+        self.stretches.iter().map(of_stretch).fold(0.0, f64::max)
+    }
+}
+
+/// Weighs all windows of a stretch; those beyond `threshold` of the limit are findings.
+fn tally<'a>(
+    signal: &Signal<'_>,
+    curve: &'a LimitCurve,
+    rate_hz: f64,
+    threshold: f64,
+) -> Tally<'a> {
+    let mut tally = Tally::new(curve, rate_hz, threshold);
+    let bar = assured(signal, curve, rate_hz).min(tally.threshold);
+    let least_level = curve.least() * bar.clamp(0.0, 1.0);
     each_window(signal, least_level * (1.0 - SPARE), |w| tally.visit(&w));
-    tally.result(signal, clock)
+    tally
 }
 
 /// What one stretch gives.
@@ -108,18 +164,21 @@ struct Tally<'a> {
     rate_hz: f64,
     marked_s: Vec<f64>,
     per_least_limit: f64,
+    /// Utilisation beyond which a window is a finding.
+    threshold: f64,
     governing: Option<Candidate>,
     breaches: Unions,
     ignored: Unions,
 }
 
 impl<'a> Tally<'a> {
-    fn new(curve: &'a LimitCurve, rate_hz: f64) -> Self {
+    fn new(curve: &'a LimitCurve, rate_hz: f64, threshold: f64) -> Self {
         Self {
             curve,
             rate_hz,
             marked_s: curve.marked_durations_s(),
             per_least_limit: (1.0 + SPARE) / curve.least(),
+            threshold: threshold.max(0.0),
             governing: None,
             breaches: Unions::default(),
             ignored: Unions::default(),
@@ -174,14 +233,13 @@ impl<'a> Tally<'a> {
             limit,
             utilisation: level / limit,
         };
-        let beyond = candidate.utilisation > 1.0;
         if !self.curve.judges(duration_s) {
-            if beyond {
+            if candidate.utilisation > 1.0 {
                 self.ignored.add(candidate);
             }
             return;
         }
-        if beyond {
+        if candidate.utilisation > self.threshold {
             self.ignored.drop_held_by(&candidate);
             self.breaches.add(candidate);
         }
@@ -196,7 +254,8 @@ impl<'a> Tally<'a> {
 
     /// Below this utilisation nothing changes what is reported.
     fn bar(&self) -> f64 {
-        self.governing.map_or(0.0, |best| best.utilisation.min(1.0))
+        let best = self.governing.map_or(0.0, |best| best.utilisation);
+        best.min(1.0).min(self.threshold)
     }
 
     fn result(&self, signal: &Signal<'_>, clock: Clock) -> Stretched {

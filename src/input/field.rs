@@ -12,6 +12,8 @@ use std::ops::Range;
 use schemars::{JsonSchema, Schema, SchemaGenerator, json_schema};
 use serde::de::{Deserialize, Deserializer, Error, MapAccess, SeqAccess, Visitor};
 
+use crate::input::quantity::SPACE;
+
 /// Name under which the deserializer hands out a value with its place.
 pub(super) const FIELD: &str = "$field";
 /// Name under which the deserializer tells a scalar (`some`) from keys (`newtype`).
@@ -143,6 +145,12 @@ impl Visitor<'_> for TextVisitor {
     }
 }
 
+/// A character that shows, as a regular expression of JSON Schema.
+const SHOWN: &str =
+    r"[^\u0000-\u0020\u007f-\u00a0\u1680\u2000-\u200a\u2028\u2029\u202f\u205f\u3000]";
+/// A character that is allowed between two of those.
+const BETWEEN: &str = r"[^\u0000-\u0009\u000b-\u001f\u007f-\u009f]";
+
 impl JsonSchema for Text {
     fn inline_schema() -> bool {
         true
@@ -153,7 +161,11 @@ impl JsonSchema for Text {
     }
 
     fn json_schema(_: &mut SchemaGenerator) -> Schema {
-        json_schema!({"type": ["string", "number", "boolean"], "minLength": 1})
+        json_schema!({
+            "type": ["string", "number", "boolean"],
+            "pattern": format!("^{SPACE}*{SHOWN}({BETWEEN}*{SHOWN})?{SPACE}*$"),
+            "patternErrorMessage": "expected some text without control characters"
+        })
     }
 }
 

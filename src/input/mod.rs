@@ -32,6 +32,8 @@ mod written;
 #[cfg(test)]
 mod quantity_tests;
 #[cfg(test)]
+mod schema_tests;
+#[cfg(test)]
 mod tests;
 
 pub use envelope::{

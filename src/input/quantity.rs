@@ -136,7 +136,8 @@ fn in_si<D: Dimension>(text: &str, number: &str, unit: &str) -> Result<f64, NoQu
     // The grammar above is a part of what `f64` reads; only the size can be wrong.
     let value: f64 = number.parse().map_err(|_| no_number::<D>(text))?;
     let si = found.to_si(value);
-    let lost = si == 0.0 && value == 0.0 && number.bytes().any(is_significant);
+    let mantissa = number.split(['e', 'E']).next().unwrap_or(number);
+    let lost = si == 0.0 && value == 0.0 && mantissa.bytes().any(is_significant);
     match si.is_finite() && !lost {
         true => Ok(si),
         false => Err(NoQuantity {
@@ -235,8 +236,13 @@ impl Visitor<'_> for SidedVisitor {
     }
 }
 
-/// A regular expression for a number, as JSON Schema takes it.
-const NUMBER: &str = r"[+-]?([0-9]+\.?[0-9]*|\.[0-9]+)([eE][+-]?[0-9]+)?";
+/// Digits with a point or without, and an exponent, as a regular expression of JSON Schema.
+const NUMBER: &str = r"([0-9]+\.?[0-9]*|\.[0-9]+)([eE][+-]?[0-9]+)?";
+/// A number that is zero.
+const ZERO: &str = r"(0+\.?0*|\.0+)([eE][+-]?[0-9]+)?";
+/// White space as Rust trims it; the `\s` of editors differs in two characters.
+pub(super) const SPACE: &str =
+    r"[\t-\r \u0085\u00a0\u1680\u2000-\u200a\u2028\u2029\u202f\u205f\u3000]";
 
 fn units_pattern<D: Dimension>() -> String {
     let names: Vec<String> = D::UNITS.iter().map(|unit| escaped(unit.name)).collect();
@@ -244,7 +250,7 @@ fn units_pattern<D: Dimension>() -> String {
 }
 
 fn escaped(name: &str) -> String {
-    name.replace('/', r"\/").replace(' ', r"\s+")
+    name.replace('/', r"\/").replace(' ', &format!("{SPACE}+"))
 }
 
 impl<D: Dimension> JsonSchema for Quantity<D> {
@@ -256,7 +262,16 @@ impl<D: Dimension> JsonSchema for Quantity<D> {
         json_schema!({
             "type": "string",
             "description": format!("{} such as `{}`", D::ARTICLE_NAME, D::EXAMPLE),
-            "pattern": format!(r"^\s*{NUMBER}\s*({})\s*$", units_pattern::<D>()),
+            "pattern": format!(
+                "^{SPACE}*[+-]?{NUMBER}{SPACE}*({}){SPACE}*$",
+                units_pattern::<D>()
+            ),
+            "patternErrorMessage": format!(
+                "expected {} such as `{}`; its units are {}",
+                D::ARTICLE_NAME,
+                D::EXAMPLE,
+                listed(D::UNITS.iter().map(|unit| unit.name))
+            ),
         })
     }
 }
@@ -272,8 +287,9 @@ impl JsonSchema for SidedAngle {
             "type": "string",
             "description": "an angle with a side such as `30 deg left`; zero needs no side",
             "pattern": format!(
-                r"^\s*({NUMBER}\s*({units})\s*(left|right)|[+-]?0+(\.0*)?\s*({units}))\s*$"
+                "^{SPACE}*((\\+?{NUMBER}|-{ZERO}){SPACE}*({units}){SPACE}*(left|right)|[+-]?{ZERO}{SPACE}*({units})){SPACE}*$"
             ),
+            "patternErrorMessage": "expected an angle with a side such as `30 deg left`",
         })
     }
 }

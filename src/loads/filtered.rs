@@ -13,9 +13,15 @@ pub struct Filtered {
     pub delay_s: f64,
     /// Filtered loads.
     pub axes_g: AxesG,
+    /// Error of numerics that any load may have, g.
+    pub numerical_g: f64,
+    /// Half-widths that the geometry's uncertainty gives each load, g, where there is any.
+    pub margin_g: Option<AxesG>,
 }
 
-/// Runs an envelope's filter over three axes. A corner is below half of `rate_hz`.
+/// Runs an envelope's filter over three axes, whose errors are left to the caller.
+///
+/// A corner is below half of `rate_hz`.
 pub fn filtered(axes_g: &AxesG, rate_hz: f64, filter: Filter) -> Filtered {
     let mut axes_g = axes_g.clone();
     let delay_s = match filter {
@@ -32,5 +38,7 @@ pub fn filtered(axes_g: &AxesG, rate_hz: f64, filter: Filter) -> Filtered {
         rate_hz,
         delay_s,
         axes_g,
+        numerical_g: 0.0,
+        margin_g: None,
     }
 }

@@ -6,6 +6,8 @@
 
 mod felt;
 mod filtered;
+mod margin;
 
 pub use felt::{AxesG, CarLoads, car_from_rider, car_loads, seat_positions};
 pub use filtered::{Filtered, filtered};
+pub use margin::{held_back, seat_margins};

@@ -54,6 +54,24 @@ pub struct Samples {
     pub acceleration_m_s2: Vec<f64>,
 }
 
+impl Samples {
+    /// Some of the samples, by index; the rate is left as it is.
+    pub fn picked(&self, indices: impl Iterator<Item = usize>) -> Self {
+        let mut picked = Self {
+            rate_hz: self.rate_hz,
+            train_station_m: Vec::new(),
+            speed_m_s: Vec::new(),
+            acceleration_m_s2: Vec::new(),
+        };
+        for i in indices {
+            picked.train_station_m.push(self.train_station_m[i]);
+            picked.speed_m_s.push(self.speed_m_s[i]);
+            picked.acceleration_m_s2.push(self.acceleration_m_s2[i]);
+        }
+        picked
+    }
+}
+
 impl History<'_> {
     /// The state at a time from 0 to the duration, s; none outside, or where the run has no length.
     pub fn state_at(&self, time_s: f64) -> Option<State> {

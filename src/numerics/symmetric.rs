@@ -43,11 +43,11 @@ impl SymmetricBand {
             for back in 1..=HALF.min(i) {
                 let j = i - back;
                 let scaled = lower[j][back - 1] * diagonal[j];
-                for k in 0..=HALF - back {
-                    row[k] -= scaled * lower[j].get(back + k - 1).copied().unwrap_or(0.0);
+                for (value, below) in row.iter_mut().zip(&lower[j][back - 1..]) {
+                    *value -= scaled * below;
                 }
             }
-            if !(row[0] > 0.0) {
+            if row[0].is_nan() || row[0] <= 0.0 {
                 return None;
             }
             diagonal[i] = row[0];

@@ -145,6 +145,11 @@ impl Fitted {
         }
     }
 
+    pub(super) fn has_margin(&self) -> bool {
+        let known = |noise: &Noise| !matches!(noise, Noise::Unknown);
+        known(&self.noise) || known(&self.roll_noise)
+    }
+
     fn parameter_at(&self, station_m: f64) -> f64 {
         let s = if self.closed {
             station_m.rem_euclid(self.length_m)
@@ -613,7 +618,7 @@ fn check_turns(table: &PointTable, centre: &[Vector3<f64>]) -> Result<(), Vec<Di
     };
     let sharp = corners
         .map(|i| (i, turn_deg(&i)))
-        .filter(|(_, turn)| !(*turn <= LARGEST_TURN_DEG));
+        .filter(|(_, turn)| turn.is_nan() || *turn > LARGEST_TURN_DEG);
     let sharp = sharp.collect::<Vec<_>>();
     let shown = sharp.iter().take(SHARP_SHOWN).map(|&(i, turn)| {
         Diagnostic::error(format!(

@@ -21,6 +21,19 @@ pub struct Margin {
     pub roll_bend_rad_m2: f64,
 }
 
+impl Margin {
+    /// The larger of each.
+    pub fn larger(&self, other: &Self) -> Self {
+        Self {
+            direction: self.direction.max(other.direction),
+            bend_1_m: self.bend_1_m.max(other.bend_1_m),
+            roll_rad: self.roll_rad.max(other.roll_rad),
+            roll_rate_rad_m: self.roll_rate_rad_m.max(other.roll_rate_rad_m),
+            roll_bend_rad_m2: self.roll_bend_rad_m2.max(other.roll_bend_rad_m2),
+        }
+    }
+}
+
 /// Half-widths of a value and its first two derivatives over a parameter.
 #[derive(Clone, Debug)]
 pub(super) enum Noise {
@@ -104,10 +117,10 @@ static GAINS: LazyLock<[[f64; HALF_STEPS]; 3]> = LazyLock::new(|| {
         let mut values = vec![[0.0]; POINTS];
         values[point] = [1.0];
         let response = Curve::interpolating(&parameters, &values);
-        for half_step in 0..HALF_STEPS {
-            let derivatives = response.at(0.5 * half_step as f64);
-            for order in 0..3 {
-                squares[order][half_step] += derivatives[order][0] * derivatives[order][0];
+        for (order, row) in squares.iter_mut().enumerate() {
+            for (half_step, square) in row.iter_mut().enumerate() {
+                let value = response.at(0.5 * half_step as f64)[order][0];
+                *square += value * value;
             }
         }
     }

@@ -144,6 +144,14 @@ impl Spine {
         }
     }
 
+    /// Whether the error of its points is known, so that [`Spine::margin_at`] says something.
+    pub fn has_margin(&self) -> bool {
+        match &self.shape {
+            Shape::Elements(_) => false,
+            Shape::Fitted(fitted) => fitted.has_margin(),
+        }
+    }
+
     /// How the curve was laid through points; none for elements.
     pub fn fit(&self) -> Option<&FitReport> {
         match &self.shape {

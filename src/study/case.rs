@@ -2,6 +2,7 @@
 
 use super::assessment::{Case, Extremes, Finding, RuleResult, Run, SeatResult};
 use super::holds::{for_seat, in_scenario};
+use super::numerics::{self, Numerics};
 use super::plan::{CaseId, Design, Plan};
 use super::seat::SeatView;
 use super::train_speed::TrainRecord;
@@ -61,6 +62,7 @@ fn unmade_seats(plan: &Plan<'_>, id: CaseId, reason: &str) -> Vec<SeatResult> {
             car: car + 1,
             seat: seat.name.clone(),
             felt_g: [None; 3],
+            margin_g: None,
             rules: envelopes
                 .iter()
                 .flat_map(|e| e.rules.iter().map(move |rule| (e, rule)))
@@ -77,10 +79,15 @@ fn unmade_seats(plan: &Plan<'_>, id: CaseId, reason: &str) -> Vec<SeatResult> {
 }
 
 /// Whether what a run shows can be called inside, and why not.
-fn run_state(history: &History<'_>, samples: &Samples) -> RunState {
+fn run_state(
+    history: &History<'_>,
+    samples: &Samples,
+    numerics: &Result<Numerics, String>,
+) -> RunState {
     let whole = not_completed(history)
         .or_else(|| books_do_not_close(history))
-        .or_else(|| samples_are_missing(history, samples));
+        .or_else(|| samples_are_missing(history, samples))
+        .or_else(|| numerics.clone().err());
     whole.map_or(RunState::Complete, RunState::Incomplete)
 }
 
@@ -131,6 +138,7 @@ pub(super) struct Judging<'a> {
     pub(super) design: &'a Design<'a>,
     pub(super) samples: Samples,
     pub(super) state: RunState,
+    pub(super) numerics: Numerics,
     pub(super) train: TrainRecord,
     /// By envelope and rule: what the rules about the speed of the train give, whatever the seat.
     pub(super) of_train: Vec<Vec<Option<RuleResult>>>,
@@ -139,12 +147,17 @@ pub(super) struct Judging<'a> {
 impl<'a> Judging<'a> {
     fn new(plan: &'a Plan<'a>, id: CaseId, history: &History<'_>) -> Self {
         let samples = history.samples(plan.study.rate_hz);
+        let numerics = numerics::estimate(plan, id, history, &samples);
+        let state = run_state(history, &samples, &numerics);
+        let numerics = numerics.unwrap_or_default();
+        let goal = &plan.study.operation.goal;
         let mut judging = Self {
             plan,
             id,
             design: &plan.variants[id.variant],
-            state: run_state(history, &samples),
-            train: TrainRecord::new(history, &samples, &plan.study.operation.goal),
+            state,
+            train: TrainRecord::new(history, &samples, goal, numerics.speed_m_s),
+            numerics,
             of_train: Vec::new(),
             samples,
         };
@@ -185,8 +198,11 @@ impl<'a> Judging<'a> {
             .plan
             .needs_excluded()
             .then(|| self.loads(car, GravityTerm::Excluded));
+        let (poses, seats_here) = (&self.design.poses, &self.design.seats[car]);
+        let margins = loads::seat_margins(poses, car, seats_here, &self.samples, &felt);
         for (index, seat) in self.design.seats[car].iter().enumerate() {
             let seat = SeatView {
+                margin_g: margins.as_ref().map(|margins| &margins[index]),
                 judging: self,
                 car,
                 seat,

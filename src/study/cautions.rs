@@ -1,17 +1,20 @@
 //! What a reader has to know before using a result.
 
+use super::assessment::{At, Case};
 use super::holds::{for_seat, in_scenario};
 use super::plan::{Design, Plan};
-use crate::input::{Envelope, Fit, Rule, RuleKind, Status, TrackSource};
+use crate::input::{Envelope, Rule, RuleKind, Status};
+use crate::spine::FitMethod;
 
 /// In a fixed order, each once.
-pub(super) fn of(plan: &Plan<'_>) -> Vec<String> {
+pub(super) fn of(plan: &Plan<'_>, cases: &[Case]) -> Vec<String> {
     let mut cautions = vec![
         "The results hold only for the envelopes given; they defer to the applicable standard, the local \
          code and the judgement of a licensed engineer."
             .to_owned(),
-        "The uncertainty that numerics and geometry give a load is not yet estimated: band is 0, so that a \
-         utilisation a hair below 1 is no margin."
+        "The band of a utilisation holds the error of numerics and, where a track comes from points, two \
+         standard deviations of what their error leaves open. It does not hold what masses, friction, air or \
+         the build of the ride leave open: vary them in scenarios."
             .to_owned(),
     ];
     cautions.extend(illustrative(plan));
@@ -23,7 +26,10 @@ pub(super) fn of(plan: &Plan<'_>) -> Vec<String> {
     }
     cautions.extend(without_rules(plan));
     for design in &plan.variants {
-        let of_variant = [exact_points(design), no_inertia(design)];
+        let of_variant = [
+            points(design, worst_margin(design, cases)),
+            no_inertia(design),
+        ];
         for caution in of_variant.into_iter().flatten() {
             if !cautions.contains(&caution) {
                 cautions.push(caution);
@@ -108,16 +114,47 @@ fn without_rules(plan: &Plan<'_>) -> Option<String> {
     })
 }
 
-fn exact_points(design: &Design<'_>) -> Option<String> {
-    let track = &design.variant.track;
-    match &track.source {
-        TrackSource::Points(table) if table.fit == Fit::Exact => Some(format!(
-            "The point table of the track `{}` is taken as exact: errors of its points go into the loads \
-             and are not assessed.",
-            track.name
-        )),
-        _ => None,
-    }
+/// The largest half-width that the geometry gives any load of a variant.
+fn worst_margin(design: &Design<'_>, cases: &[Case]) -> Option<At> {
+    let of_variant = cases
+        .iter()
+        .filter(|case| case.variant == design.variant.name);
+    let margins = of_variant
+        .flat_map(|case| &case.seats)
+        .filter_map(|seat| seat.margin_g);
+    margins.max_by(|a, b| a.value.total_cmp(&b.value))
+}
+
+/// What the error of a track's points makes of the loads, or that nothing is known of it.
+fn points(design: &Design<'_>, worst: Option<At>) -> Option<String> {
+    let track = &design.variant.track.name;
+    let report = design.spine.fit()?;
+    let (Some(error_m), Some(worst)) = (report.error_m, worst) else {
+        return Some(format!(
+            "The point table of the track `{track}` is taken as exact: errors of its points go into the \
+             loads and are not assessed."
+        ));
+    };
+    let error = format!("{} mm", short(1e3 * error_m));
+    let found = match report.method {
+        FitMethod::Exact => format!("interpolated as if exact; their rounding alone, {error},"),
+        FitMethod::Within => format!("smoothed to the stated error of {error}, which"),
+        FitMethod::Grid => format!("smoothed to the rounding of their decimals, {error}, which"),
+        FitMethod::CrossValidated => {
+            format!("smoothed by cross-validation to an error of {error}, which")
+        }
+    };
+    let (g, at_m) = (short(worst.value), worst.station_m);
+    Some(format!(
+        "The points of the track `{track}` are {found} leaves up to ±{g} g in a load (two standard \
+         deviations, at {at_m:.1} m)."
+    ))
+}
+
+/// Two significant digits.
+fn short(value: f64) -> String {
+    let digits = (1.0 - value.abs().log10().floor()).clamp(0.0, 9.0) as usize;
+    format!("{value:.digits$}")
 }
 
 fn no_inertia(design: &Design<'_>) -> Option<String> {

@@ -9,6 +9,7 @@ mod case;
 mod cautions;
 mod holds;
 mod meaning;
+mod numerics;
 mod plan;
 mod record;
 mod seat;

@@ -5,6 +5,7 @@ use std::sync::atomic::{AtomicUsize, Ordering};
 use rayon::prelude::*;
 
 use super::assessment::{Assessment, Case};
+use super::numerics::COARSER;
 use super::selection::{Selection, keeps, unknown_names};
 use super::{Progress, case, cautions, meaning};
 use crate::diagnostic::Diagnostic;
@@ -12,7 +13,7 @@ use crate::envelope::Outcome;
 use crate::input::{Filter, GravityTerm, Scenario, Seat, Study, Variant};
 use crate::motion::Ride;
 use crate::spine::Spine;
-use crate::train::Poses;
+use crate::train::{Poses, PosesSettings};
 
 /// A study narrowed and ready to run.
 pub struct Plan<'a> {
@@ -27,6 +28,8 @@ pub(super) struct Design<'a> {
     pub(super) variant: &'a Variant,
     pub(super) spine: Spine,
     pub(super) poses: Poses,
+    /// The same on a coarser grid, for the error of numerics.
+    pub(super) coarse: Poses,
     /// By car, in file order.
     pub(super) seats: Vec<Vec<Seat>>,
 }
@@ -55,11 +58,14 @@ impl<'a> Plan<'a> {
     pub fn new(study: &'a Study, selection: &Selection) -> Result<Self, Vec<Diagnostic>> {
         let mut mistakes = unknown_in(study, selection);
         let mut variants = Vec::new();
-        for variant in &study.variants {
-            if !keeps(&selection.variants, &variant.name) {
-                continue;
-            }
-            match Design::new(variant, &selection.seats) {
+        let chosen = |v: &&Variant| keeps(&selection.variants, &v.name);
+        let chosen: Vec<_> = study.variants.iter().filter(chosen).collect();
+        let designs: Vec<_> = chosen
+            .par_iter()
+            .map(|variant| Design::new(variant, &selection.seats))
+            .collect();
+        for design in designs {
+            match design {
                 Ok(design) => variants.push(design),
                 Err(more) => mistakes.extend(more),
             }
@@ -118,7 +124,7 @@ impl<'a> Plan<'a> {
         let outcomes = outcomes.chain(cases.iter().map(Case::outcome));
         Assessment {
             outcome: outcomes.max().unwrap_or(Outcome::NotAssessed),
-            cautions: cautions::of(self),
+            cautions: cautions::of(self, &cases),
             inputs: self.study.files.clone(),
             cases,
             findings,
@@ -146,10 +152,18 @@ impl<'a> Plan<'a> {
 impl<'a> Design<'a> {
     fn new(variant: &'a Variant, seats: &[String]) -> Result<Self, Vec<Diagnostic>> {
         let spine = Spine::from_track(&variant.track)?;
-        let poses = Poses::new(&spine, &variant.train).map_err(|error| {
-            let message = format!("{error} (variant `{}`)", variant.name);
-            vec![Diagnostic::error(message).at(&variant.train.place)]
-        })?;
+        let settings = PosesSettings::default();
+        let coarser = PosesSettings {
+            step_m: COARSER * settings.step_m,
+        };
+        let set = |settings| {
+            Poses::with_settings(&spine, &variant.train, settings).map_err(|error| {
+                let message = format!("{error} (variant `{}`)", variant.name);
+                vec![Diagnostic::error(message).at(&variant.train.place)]
+            })
+        };
+        let (poses, coarse) = rayon::join(|| set(settings), || set(coarser));
+        let (poses, coarse) = (poses?, coarse?);
         let cars = variant.train.cars.iter().enumerate();
         let kept = |(car, c): (usize, &crate::input::Car)| {
             let keep = |s: &&Seat| keeps(seats, &seat_name(car, s));
@@ -159,6 +173,7 @@ impl<'a> Design<'a> {
             variant,
             spine,
             poses,
+            coarse,
             seats: cars.map(kept).collect(),
         })
     }

@@ -9,6 +9,9 @@ use crate::envelope::{self, Breach, Judgement, Scope};
 use crate::input::{Axis, Envelope, GravityTerm, Rule, RuleKind, Seat};
 use crate::loads::{self, AxesG, Filtered};
 
+/// How far back, in delays, a filter gives the record a noticeable weight.
+const FILTER_MEMORY: f64 = 2.5;
+
 /// One seat of one case.
 pub(super) struct SeatView<'a> {
     pub(super) judging: &'a Judging<'a>,
@@ -19,6 +22,8 @@ pub(super) struct SeatView<'a> {
     pub(super) station_m: &'a [f64],
     pub(super) felt_g: &'a AxesG,
     pub(super) without_gravity_g: Option<&'a AxesG>,
+    /// Half-widths of the felt load, where the geometry is known to be uncertain.
+    pub(super) margin_g: Option<&'a AxesG>,
 }
 
 impl SeatView<'_> {
@@ -81,7 +86,14 @@ impl SeatView<'_> {
             (GravityTerm::Excluded, Some(axes_g)) => axes_g,
             _ => self.felt_g,
         };
-        loads::filtered(axes_g, self.judging.samples.rate_hz, view.filter)
+        let mut record = loads::filtered(axes_g, self.judging.samples.rate_hz, view.filter);
+        // A filter looks back about twice its delay.
+        let looked_back = (FILTER_MEMORY * record.delay_s * record.rate_hz).ceil() as usize;
+        record.margin_g = self
+            .margin_g
+            .map(|margin_g| loads::held_back(margin_g, looked_back + 1));
+        record.numerical_g = self.judging.numerics.load_g;
+        record
     }
 
     fn findings(
@@ -136,6 +148,14 @@ impl SeatView<'_> {
             car: self.car + 1,
             seat: self.seat.name.clone(),
             felt_g: (self.felt_g.each_ref()).map(|axis_g| Extremes::of(axis_g, wrapped_m)),
+            margin_g: self.margin_g.and_then(|margin_g| {
+                let extremes = margin_g
+                    .iter()
+                    .filter_map(|axis_g| Extremes::of(axis_g, wrapped_m));
+                extremes
+                    .map(|e| e.max)
+                    .max_by(|a, b| a.value.total_cmp(&b.value))
+            }),
             rules,
         }
     }

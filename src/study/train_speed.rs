@@ -27,7 +27,12 @@ struct Node {
 
 impl TrainRecord {
     /// Samples alone may miss the instants at which the train stands, and end before the run.
-    pub(super) fn new(history: &History<'_>, samples: &Samples, goal: &Goal) -> Self {
+    pub(super) fn new(
+        history: &History<'_>,
+        samples: &Samples,
+        goal: &Goal,
+        numerical_m_s: f64,
+    ) -> Self {
         let series = samples.train_station_m.iter().zip(&samples.speed_m_s);
         let sampled = series
             .enumerate()
@@ -54,6 +59,7 @@ impl TrainRecord {
                 stops: stops.map(|(index, _)| index).collect(),
                 time_s: nodes.iter().map(|node| node.time_s).collect(),
                 speed_m_s: nodes.iter().map(|node| node.speed_m_s).collect(),
+                numerical_m_s,
             },
             station_m: nodes.iter().map(|node| node.station_m).collect(),
         }

@@ -7,6 +7,7 @@ mod chain;
 mod layout;
 mod poses;
 
+pub use crate::spine::Margin;
 pub use layout::{Layout, occupied};
 pub use poses::{AxlePose, CarPose, Instant, Poses, PosesSettings};
 

@@ -8,7 +8,7 @@ use super::{Layout, PoseError};
 use crate::input::Train;
 use crate::numerics::jet::{Jet, VectorJet};
 use crate::numerics::quintic::{Grid, Jets, Quintic};
-use crate::spine::Spine;
+use crate::spine::{Margin, Spine};
 
 /// Nodes closer than this are one, m: a break misplaced by so little acts for less than a tenth of
 /// a millisecond, while the quintic of a shorter interval would only hold rounding.
@@ -46,7 +46,12 @@ pub struct Poses {
     lap_m: Option<f64>,
     /// Where an axle meets a break of the spine, increasing; a closed spine has none.
     breaks_m: Vec<f64>,
+    /// How far the spine may be off, every [`MARGIN_STEP_M`]; empty where that is not known.
+    margins: Vec<Margin>,
 }
+
+/// Stations between which margins are not looked at, m: closer than points lie.
+const MARGIN_STEP_M: f64 = 0.1;
 
 /// The place of one q in the tables, from [`Poses::locate`].
 #[derive(Clone, Copy, Debug)]
@@ -128,6 +133,7 @@ impl Poses {
             last_m,
             lap_m,
             breaks_m: knots,
+            margins: margins(spine),
         })
     }
 
@@ -208,6 +214,29 @@ impl Poses {
             station_m: Jet::new(at.q - value[0], 1.0 - d1[0], -d2[0]),
             height_m: Jet::new(value[1], d1[1], d2[1]),
         }
+    }
+
+    /// Whether the spine is known to be uncertain.
+    pub fn has_margin(&self) -> bool {
+        !self.margins.is_empty()
+    }
+
+    /// How far the spine may be off under a car: the larger of the margins at its axles.
+    pub fn margin(&self, car: usize, at: Instant) -> Margin {
+        let [front, rear] = self.layout.cars[car];
+        let under = |axle: usize| {
+            let station_m = self.axle(axle, at).station_m.value;
+            let wrapped_m = self
+                .lap_m
+                .map_or(station_m, |lap_m| station_m.rem_euclid(lap_m));
+            let index = (wrapped_m / MARGIN_STEP_M).round().max(0.0) as usize;
+            self.margins
+                .get(index)
+                .or(self.margins.last())
+                .copied()
+                .unwrap_or_default()
+        };
+        under(front).larger(&under(rear))
     }
 
     /// Mean station of a car's axles, m (not wrapped).
@@ -412,6 +441,16 @@ fn nodes(knots: &[f64], step_m: f64) -> Vec<f64> {
         nodes.push(ends[1]);
     }
     nodes
+}
+
+/// Margins of a spine at equal steps; none where it has none.
+fn margins(spine: &Spine) -> Vec<Margin> {
+    if !spine.has_margin() {
+        return Vec::new();
+    }
+    let count = (spine.length_m() / MARGIN_STEP_M).ceil() as usize;
+    let station_m = |i: usize| (i as f64 * MARGIN_STEP_M).min(spine.length_m());
+    (0..=count).map(|i| spine.margin_at(station_m(i))).collect()
 }
 
 /// Refuses tables beyond the stated bound.

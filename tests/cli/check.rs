@@ -296,6 +296,31 @@ fn narrowing_keeps_what_is_named() {
 #[test]
 fn people_may_read_feet() {
     let ran = Fixture::level().run(&["check", "ride.study.yaml", "--units", "us"]);
-    // 60 m are 196.85 ft.
-    assert!(ran.out.contains("196.9 ft"), "{ran:?}");
+    // 60 m are 196.85 ft and 10 m/s are 22.37 mph.
+    assert!(
+        ran.out.contains("196.9 ft") && ran.out.contains("22.4 mph"),
+        "{ran:?}"
+    );
+    assert!(
+        !ran.out.contains(" m/s") && !ran.out.contains(" m "),
+        "{ran:?}"
+    );
+}
+
+#[test]
+fn machines_read_si_whatever_people_read() {
+    let study = Fixture::valley();
+    let json = |units| {
+        study
+            .run(&[
+                "check",
+                "ride.study.yaml",
+                "--format",
+                "json",
+                "--units",
+                units,
+            ])
+            .out
+    };
+    assert_eq!(json("us"), json("si"));
 }

@@ -2,34 +2,17 @@
 
 mod check;
 mod export;
+mod faults;
 mod fixture;
+mod new;
 mod rules;
 mod speed_rules;
 mod wrong_input;
 
-use std::fs;
 use std::io::Read;
 use std::process::Stdio;
 
 use fixture::Fixture;
-
-#[cfg(target_os = "linux")]
-#[test]
-fn a_full_disk_is_told() {
-    let full = fs::OpenOptions::new()
-        .write(true)
-        .open("/dev/full")
-        .expect("a device of Linux");
-    let output = Fixture::level()
-        .command(&["check", "ride.study.yaml"])
-        .stdout(full)
-        .output()
-        .expect("the program starts");
-    assert_eq!(output.status.code(), Some(2));
-    assert!(
-        String::from_utf8_lossy(&output.stderr).contains("standard output could not be written")
-    );
-}
 
 #[test]
 fn a_reader_that_goes_away_is_no_mistake() {

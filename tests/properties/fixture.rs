@@ -46,6 +46,8 @@ pub(crate) fn record(signal: &[f64], rate_hz: f64) -> Filtered {
             vec![0.0; signal.len()],
             signal.to_vec(),
         ],
+        numerical_g: 0.0,
+        margin_g: None,
     }
 }
 

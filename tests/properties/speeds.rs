@@ -148,6 +148,7 @@ fn judged(
         time_s: (0..speed_m_s.len()).map(|i| i as f64 / 10.0).collect(),
         speed_m_s: speed_m_s.to_vec(),
         stops: stops.to_vec(),
+        numerical_m_s: 0.0,
     };
     let scope = match stretches {
         [] => Scope::Whole,

@@ -6,14 +6,15 @@ use serde::Deserialize;
 use crate::input::dimension::{Frequency, Length, Speed, Time};
 use crate::input::field::{Field, Text, WordOr};
 use crate::input::quantity::Quantity;
-use crate::input::written::{Curve, Later};
+use crate::input::written::{Curve, Later, alternatives};
 
 /// An acceptance envelope: rules from one document, transcribed by the user.
 #[derive(Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "envelope")]
+#[schemars(rename = "envelope", transform = alternatives::envelope)]
 pub(in crate::input) struct EnvelopeFile {
     /// Version of the file format: 1.
+    #[schemars(extend("const" = 1))]
     pub(in crate::input) crestfall: Field<u64>,
     /// Name of the envelope.
     pub(in crate::input) envelope: Field<Text>,
@@ -26,6 +27,7 @@ pub(in crate::input) struct EnvelopeFile {
     /// What its loads are filtered with: `none`, or `{butterworth: {poles, corner, passes}}`.
     pub(in crate::input) filter: Field<WordOr<FilterWord, FilterKeys>>,
     /// Its rules.
+    #[schemars(extend("minItems" = 1))]
     pub(in crate::input) rules: Field<Vec<Field<RuleKeys>>>,
 }
 
@@ -78,7 +80,7 @@ pub(in crate::input) enum FilterWord {
 /// A filter by family.
 #[derive(Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "filter")]
+#[schemars(rename = "filter", extend("required" = ["butterworth"]))]
 pub(in crate::input) struct FilterKeys {
     /// Butterworth low-pass.
     pub(in crate::input) butterworth: Option<Field<ButterworthKeys>>,
@@ -96,6 +98,7 @@ pub(in crate::input) struct FilterKeys {
 #[schemars(rename = "butterworth")]
 pub(in crate::input) struct ButterworthKeys {
     /// 1 to 8.
+    #[schemars(extend("minimum" = 1, "maximum" = 8))]
     pub(in crate::input) poles: Field<u64>,
     /// Corner frequency (half the power).
     pub(in crate::input) corner: Field<Quantity<Frequency>>,
@@ -119,7 +122,7 @@ pub(in crate::input) enum PassesWord {
 /// One requirement.
 #[derive(Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "rule")]
+#[schemars(rename = "rule", transform = alternatives::rule)]
 pub(in crate::input) struct RuleKeys {
     /// Its name, unique in the envelope.
     pub(in crate::input) id: Field<Text>,
@@ -134,8 +137,10 @@ pub(in crate::input) struct RuleKeys {
     /// Which way a load counts; needed with `limits`.
     pub(in crate::input) sign: Option<Field<SignWord>>,
     /// Limits in g, above 0, against duration; or give `floor`.
+    #[schemars(transform = alternatives::limits)]
     pub(in crate::input) limits: Option<Field<Curve>>,
     /// Least loads in g, below 1, against duration; in place of `limits` and `sign`.
+    #[schemars(transform = alternatives::floor)]
     pub(in crate::input) floor: Option<Field<Curve>>,
     /// How the curve runs between its points.
     pub(in crate::input) between: Option<Field<BetweenWord>>,
@@ -163,15 +168,19 @@ pub(in crate::input) struct RuleKeys {
 /// Where, when and for whom a rule holds: different keys are and-ed, the entries of one or-ed.
 #[derive(Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "where")]
+#[schemars(rename = "where", extend("minProperties" = 1))]
 pub(in crate::input) struct WhereKeys {
     /// Stretches by station: the seat's own, for a `speed` rule the leading axle's.
+    #[schemars(extend("minItems" = 1))]
     pub(in crate::input) stations: Option<Field<Vec<Field<StationsKeys>>>>,
     /// Names of elements or landmarks.
+    #[schemars(extend("minItems" = 1))]
     pub(in crate::input) landmarks: Option<Field<Vec<Field<Text>>>>,
     /// Names of scenarios.
+    #[schemars(extend("minItems" = 1))]
     pub(in crate::input) scenarios: Option<Field<Vec<Field<Text>>>>,
     /// Car and seat, such as `1-front-left`.
+    #[schemars(extend("minItems" = 1))]
     pub(in crate::input) seats: Option<Field<Vec<Field<Text>>>>,
 }
 
@@ -192,6 +201,7 @@ pub(in crate::input) struct StationsKeys {
 #[schemars(rename = "scale")]
 pub(in crate::input) struct ScaleKeys {
     /// Above 0.
+    #[schemars(extend("minimum" = 1e-6, "maximum" = 1e6))]
     pub(in crate::input) factor: Field<f64>,
     /// Why; it is shown with every result.
     pub(in crate::input) reason: Field<Text>,

@@ -3,6 +3,7 @@
 //! Decoding and the JSON Schema both come from these types; their doc comments
 //! are the descriptions an editor shows.
 
+mod alternatives;
 mod curve;
 pub(super) mod envelope;
 pub(super) mod operation;

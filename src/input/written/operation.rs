@@ -6,13 +6,15 @@ use serde::Deserialize;
 use crate::input::dimension::{Angle, Area, Density, Force, Length, Speed, Temperature, Time};
 use crate::input::field::{Entries, Field, Text, WordOr};
 use crate::input::quantity::Quantity;
+use crate::input::written::alternatives;
 
 /// How a ride is operated: release, zones, resistance, air and scenarios.
 #[derive(Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "operation")]
+#[schemars(rename = "operation", transform = alternatives::operation)]
 pub(in crate::input) struct OperationFile {
     /// Version of the file format: 1.
+    #[schemars(extend("const" = 1))]
     pub(in crate::input) crestfall: Field<u64>,
     /// Name of the operation.
     pub(in crate::input) operation: Field<Text>,
@@ -27,6 +29,7 @@ pub(in crate::input) struct OperationFile {
     /// Kinds of friction and drag, by name.
     pub(in crate::input) resistance: Field<Entries<ResistanceKeys>>,
     /// The air; may be given in the scenarios instead.
+    #[schemars(transform = alternatives::nameless)]
     pub(in crate::input) air: Option<Field<AirKeys>>,
     /// Stretches with a device.
     pub(in crate::input) zones: Option<Field<Vec<Field<ZoneKeys>>>>,
@@ -62,10 +65,13 @@ pub(in crate::input) struct FinishKeys {
 #[schemars(rename = "resistance")]
 pub(in crate::input) struct ResistanceKeys {
     /// Coefficient on the load in the car's up direction.
+    #[schemars(extend("minimum" = 0))]
     pub(in crate::input) running: Field<f64>,
     /// Coefficient on the load in the car's left direction.
+    #[schemars(extend("minimum" = 0))]
     pub(in crate::input) side: Field<f64>,
     /// Coefficient on the train's weight, whatever the load; 0 where left out.
+    #[schemars(extend("minimum" = 0))]
     pub(in crate::input) bearings: Option<Field<f64>>,
     /// Drag coefficient times area of the whole train.
     pub(in crate::input) drag_area: Field<Quantity<Area>>,
@@ -74,7 +80,7 @@ pub(in crate::input) struct ResistanceKeys {
 /// The air: a density, or an altitude and perhaps a temperature.
 #[derive(Clone, Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "air")]
+#[schemars(rename = "air", transform = alternatives::air)]
 pub(in crate::input) struct AirKeys {
     /// Only in a grid: a name for this air.
     pub(in crate::input) name: Option<Field<Text>>,
@@ -89,7 +95,7 @@ pub(in crate::input) struct AirKeys {
 /// A steady, level wind.
 #[derive(Clone, Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "wind")]
+#[schemars(rename = "wind", transform = alternatives::wind)]
 pub(in crate::input) struct WindKeys {
     /// Only in a grid: a name for this wind; alone it is still air.
     pub(in crate::input) name: Option<Field<Text>>,
@@ -117,7 +123,7 @@ pub(in crate::input) enum ZoneKind {
 /// A stretch with a device.
 #[derive(Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "zone")]
+#[schemars(rename = "zone", transform = alternatives::zone)]
 pub(in crate::input) struct ZoneKeys {
     /// Its name.
     pub(in crate::input) name: Field<Text>,
@@ -170,12 +176,15 @@ pub(in crate::input) struct ZoneSettings {
 #[schemars(rename = "scenario")]
 pub(in crate::input) struct ScenarioKeys {
     /// Who is aboard.
+    #[schemars(transform = alternatives::nameless)]
     pub(in crate::input) riders: Field<WrittenRiders>,
     /// Name of a resistance.
     pub(in crate::input) resistance: Field<Text>,
     /// The air; the operation's where left out.
+    #[schemars(transform = alternatives::nameless)]
     pub(in crate::input) air: Option<Field<AirKeys>>,
     /// The wind; still air where left out.
+    #[schemars(transform = alternatives::nameless_wind)]
     pub(in crate::input) wind: Option<Field<WindKeys>>,
     /// Names of zones that are switched off.
     pub(in crate::input) without: Option<Field<Vec<Field<Text>>>>,
@@ -191,12 +200,16 @@ pub(in crate::input) struct ScenarioKeys {
 #[schemars(rename = "grid")]
 pub(in crate::input) struct GridKeys {
     /// Who is aboard.
+    #[schemars(transform = alternatives::named)]
     pub(in crate::input) riders: Field<Vec<Field<WrittenRiders>>>,
     /// Names of resistances.
+    #[schemars(extend("minItems" = 1))]
     pub(in crate::input) resistance: Field<Vec<Field<Text>>>,
     /// Kinds of air, each with a name; the operation's where left out.
+    #[schemars(transform = alternatives::named)]
     pub(in crate::input) air: Option<Field<Vec<Field<AirKeys>>>>,
     /// Winds, each with a name; still air where left out.
+    #[schemars(transform = alternatives::named)]
     pub(in crate::input) wind: Option<Field<Vec<Field<WindKeys>>>>,
 }
 

@@ -6,13 +6,15 @@ use serde::Deserialize;
 use crate::input::dimension::{Acceleration, Frequency};
 use crate::input::field::{Entries, Field, Text, WordOr};
 use crate::input::quantity::Quantity;
+use crate::input::written::alternatives;
 
 /// A study: the designs under comparison, a train, an operation and the envelopes they are held against.
 #[derive(Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "study")]
+#[schemars(rename = "study", transform = alternatives::study)]
 pub(in crate::input) struct StudyFile {
     /// Version of the file format: 1.
+    #[schemars(extend("const" = 1))]
     pub(in crate::input) crestfall: Field<u64>,
     /// Name of the study.
     pub(in crate::input) study: Field<Text>,
@@ -25,6 +27,7 @@ pub(in crate::input) struct StudyFile {
     /// Path of the operation file.
     pub(in crate::input) operation: Field<Text>,
     /// Paths of the envelope files.
+    #[schemars(extend("minItems" = 1))]
     pub(in crate::input) envelopes: Field<Vec<Field<Text>>>,
     /// Local gravity; 9.80665 m/s2 where left out.
     pub(in crate::input) gravity: Option<Field<Quantity<Acceleration>>>,

@@ -6,20 +6,22 @@ use serde::Deserialize;
 use crate::input::dimension::{Angle, Length};
 use crate::input::field::{Field, Text, WordOr};
 use crate::input::quantity::{Quantity, SidedAngle};
-use crate::input::written::Later;
+use crate::input::written::{Later, alternatives};
 
 /// A track: design elements laid end to end, or a table of points.
 #[derive(Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "track")]
+#[schemars(rename = "track", transform = alternatives::track)]
 pub(in crate::input) struct TrackFile {
     /// Version of the file format: 1.
+    #[schemars(extend("const" = 1))]
     pub(in crate::input) crestfall: Field<u64>,
     /// Name of the track.
     pub(in crate::input) track: Field<Text>,
     /// Where the elements begin; the origin, level, heading north where left out.
     pub(in crate::input) start: Option<Field<StartKeys>>,
     /// Design elements in order of travel.
+    #[schemars(extend("minItems" = 1))]
     pub(in crate::input) elements: Option<Field<Vec<Field<ElementKeys>>>>,
     /// A table of points, in place of elements.
     pub(in crate::input) points: Option<Field<PointsKeys>>,
@@ -51,7 +53,7 @@ pub(in crate::input) struct StartKeys {
 /// A stretch over which direction, grade and bank change.
 #[derive(Debug, Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "element")]
+#[schemars(rename = "element", transform = alternatives::element)]
 pub(in crate::input) struct ElementKeys {
     /// Its name, which is also a landmark.
     pub(in crate::input) name: Option<Field<Text>>,
@@ -93,6 +95,7 @@ pub(in crate::input) enum EaseWord {
 #[schemars(rename = "ramp")]
 pub(in crate::input) struct RampKeys {
     /// Part of the length over which it rises, and over which it falls; above 0, at most 0.5.
+    #[schemars(extend("exclusiveMinimum" = 0, "maximum" = 0.5))]
     pub(in crate::input) ramp: Field<f64>,
 }
 
@@ -108,6 +111,7 @@ pub(in crate::input) struct PointsKeys {
     /// Whether the last point is followed by the first; `false` where left out.
     pub(in crate::input) closed: Option<Field<bool>>,
     /// Rows of the table that are left out, counted from 1 below the header; say why in a comment.
+    #[schemars(transform = alternatives::rows)]
     pub(in crate::input) except: Option<Field<Vec<Field<u64>>>>,
 }
 

@@ -10,6 +10,7 @@ use serde::de::{Deserialize, Deserializer, Error, Visitor};
 use crate::input::dimension::{Angle, Length, Mass, MomentOfInertia};
 use crate::input::field::{Field, Text};
 use crate::input::quantity::{Quantity, SidedAngle};
+use crate::input::written::alternatives;
 
 /// A train: its cars from the front.
 #[derive(Debug, serde::Deserialize, JsonSchema)]
@@ -17,10 +18,12 @@ use crate::input::quantity::{Quantity, SidedAngle};
 #[schemars(rename = "train")]
 pub(in crate::input) struct TrainFile {
     /// Version of the file format: 1.
+    #[schemars(extend("const" = 1))]
     pub(in crate::input) crestfall: Field<u64>,
     /// Name of the train.
     pub(in crate::input) train: Field<Text>,
     /// Cars from the front.
+    #[schemars(extend("minItems" = 1))]
     pub(in crate::input) cars: Field<Vec<Field<CarKeys>>>,
     /// Per axle: the wheels' inertia over their radius squared; 0 kg where left out.
     pub(in crate::input) rolling_mass: Option<Field<Quantity<Mass>>>,
@@ -34,6 +37,7 @@ pub(in crate::input) struct TrainFile {
 #[schemars(rename = "car")]
 pub(in crate::input) struct CarKeys {
     /// How many of this kind follow each other; 1 where left out.
+    #[schemars(extend("minimum" = 1))]
     pub(in crate::input) count: Option<Field<u64>>,
     /// From its nose to the nose of the next car.
     pub(in crate::input) length: Field<Quantity<Length>>,
@@ -55,7 +59,7 @@ pub(in crate::input) type Axles = (Field<Quantity<Length>>, Field<Quantity<Lengt
 /// A position from the midpoint between a car's axles at rail height.
 #[derive(Debug, serde::Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "offset")]
+#[schemars(rename = "offset", transform = alternatives::side)]
 pub(in crate::input) struct OffsetKeys {
     /// Ahead of the midpoint.
     pub(in crate::input) forward: Field<Quantity<Length>>,
@@ -83,7 +87,7 @@ pub(in crate::input) struct InertiaKeys {
 /// A rider's reference point.
 #[derive(Debug, serde::Deserialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-#[schemars(rename = "seat")]
+#[schemars(rename = "seat", transform = alternatives::side)]
 pub(in crate::input) struct SeatKeys {
     /// Its name, unique in its car.
     pub(in crate::input) name: Field<Text>,
