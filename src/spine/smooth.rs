@@ -339,4 +339,5 @@ impl Spread {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests;
