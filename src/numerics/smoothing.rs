@@ -234,6 +234,7 @@ fn quadratic(matrix: &SymmetricBand, first: usize, b: &[f64; HALF + 1]) -> f64 {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::*;
 

@@ -100,6 +100,7 @@ impl Ldl {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::*;
     use nalgebra::DMatrix;

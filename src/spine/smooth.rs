@@ -341,4 +341,5 @@ impl Spread {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests;

@@ -1,6 +1,7 @@
 //! The commands as a user meets them: files in, text and exit status out.
 
 mod check;
+mod close_call;
 mod export;
 mod faults;
 mod fixture;

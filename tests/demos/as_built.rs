@@ -3,7 +3,6 @@
 use std::fs;
 use std::path::Path;
 
-use crestfall::envelope::Outcome;
 use crestfall::input::{read_study, read_track};
 use crestfall::motion::RunEnd;
 use crestfall::spine::{FitMethod, FitReport, Spine};
@@ -21,23 +20,37 @@ const MIDDLE_ERROR_M: f64 = 0.002 * std::f64::consts::FRAC_1_SQRT_2;
 const GAUGE_M: f64 = 1.1;
 
 #[test]
-fn a_survey_of_the_eased_ride_comes_to_the_same_verdict() {
-    let assessment = assessed(&study(STUDY), &["eased", "as-built"]);
+fn a_survey_of_the_eased_ride_is_inside_with_its_band() {
+    let assessment = assessed(&study(STUDY), &["as-built"]);
     expect_sound_runs(&assessment);
     expect_speeds_below_free_fall(&assessment, 36.1, 1.8);
+    expect_all_inside(&assessment, 8, 24, 7);
     expect_narrow(&assessment);
+    let seats = assessment.cases.iter().flat_map(|case| &case.seats);
+    for found in seats.flat_map(|seat| &seat.rules).map(|r| &r.judgement) {
+        assert!((1e-4..0.05).contains(&found.band), "{found:?}");
+    }
+}
+
+/// The table was made by a program of its own from the eased elements: their utilisations are the truth that the
+/// bands must hold, two standard deviations wide.
+#[test]
+fn exact_bands_of_the_survey_hold_the_eased_ride() {
+    let assessment = assessed(&study(STUDY), &["eased", "as-built"]);
     assert_eq!(assessment.cases.len(), 16);
     let (eased, as_built) = assessment.cases.split_at(8);
+    let (mut held, mut count) = (0.0, 0.0);
     for (eased, as_built) in eased.iter().zip(as_built) {
         assert_eq!(eased.scenario, as_built.scenario);
         let seats = eased.seats.iter().zip(&as_built.seats);
         for (designed, found) in seats.flat_map(|(e, b)| e.rules.iter().zip(&b.rules)) {
-            let used = |r: &crestfall::study::RuleResult| r.judgement.utilisation.unwrap();
-            let apart = (used(designed) - used(found)).abs();
-            assert!(apart < 0.02, "{}: {apart}", as_built.scenario);
-            assert_ne!(found.judgement.outcome, Outcome::Outside);
+            let (designed, found) = (&designed.judgement, &found.judgement);
+            let apart = (designed.utilisation.unwrap() - found.utilisation.unwrap()).abs();
+            held += f64::from(apart <= found.band + designed.band);
+            count += 1.0;
         }
     }
+    assert!(held / count >= 0.95, "{held} of {count}");
 }
 
 #[test]
