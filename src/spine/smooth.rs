@@ -77,8 +77,8 @@ const PRIOR_KEPT: f64 = 0.6;
 
 /// Least part of a point's variance that its residual is held against. Where points lie far apart the
 /// curve is drawn close to each, and its bias at sharp bends is far above the little noise that is left
-/// in a residual there: such points are not in error.
-const LEAST_LEFT: f64 = 0.8;
+/// in a residual there. More would hide slips: a curve follows a gross one to a tenth of its size.
+const LEAST_LEFT: f64 = 0.25;
 
 /// Why nothing could be fitted.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]

@@ -118,8 +118,8 @@ fn off_the_curve(table: &PointTable, blunder: &Outlier, too_many: bool) -> Diagn
             "correct the row, or leave it out with `except: [{row}]` and say why in a comment"
         ))
         .hint(
-            "where a straight meets an arc at once, no row is wrong: give the points larger errors \
-             in a column `error_mm`",
+            "where a straight meets an arc at once, or points lie far apart in a sharp bend, no row is \
+             wrong: give points closer together, or larger errors there in a column `error_mm`",
         )
 }
 
