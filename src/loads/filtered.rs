@@ -19,6 +19,16 @@ pub struct Filtered {
     pub margin_g: Option<AxesG>,
 }
 
+/// How long, s, until a filter has lost what it was started with.
+pub fn memory_s(filter: Filter, rate_hz: f64) -> f64 {
+    match filter {
+        Filter::None => 0.0,
+        Filter::Butterworth { poles, corner_hz } => {
+            Butterworth::new(poles, corner_hz, rate_hz).memory_s()
+        }
+    }
+}
+
 /// Runs an envelope's filter over three axes, whose errors are left to the caller.
 ///
 /// A corner is below half of `rate_hz`.

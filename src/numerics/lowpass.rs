@@ -5,6 +5,9 @@
 
 use std::f64::consts::PI;
 
+/// Time constants of the slowest pole after which e⁻ᵗ is below 1e-16.
+const TRANSIENT: f64 = 37.0;
+
 /// One section: b0 + b1 z⁻¹ + b2 z⁻² over 1 + a1 z⁻¹ + a2 z⁻², gain 1 at zero frequency.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Section {
@@ -19,6 +22,7 @@ pub struct Section {
 pub struct Butterworth {
     sections: Vec<Section>,
     delay_s: f64,
+    memory_s: f64,
 }
 
 impl Butterworth {
@@ -37,9 +41,13 @@ impl Butterworth {
             sections.push(first_order(k));
             damping_sum += 1.0;
         }
+        let corner_rad_s = 2.0 * rate_hz * k;
+        // Poles lie at −d/2 of the corner; the real one at −1.
+        let slowest = dampings.iter().map(|d| 0.5 * d).fold(1.0, f64::min);
         Self {
             sections,
-            delay_s: damping_sum / (2.0 * rate_hz * k),
+            delay_s: damping_sum / corner_rad_s,
+            memory_s: TRANSIENT / (slowest * corner_rad_s),
         }
     }
 
@@ -51,6 +59,11 @@ impl Butterworth {
     /// Group delay at zero frequency, s.
     pub fn delay_s(&self) -> f64 {
         self.delay_s
+    }
+
+    /// How long, s, until what the filter was started with is lost below rounding.
+    pub fn memory_s(&self) -> f64 {
+        self.memory_s
     }
 
     /// Filters a signal in place, one pass, started in the steady state of its first sample.

@@ -93,27 +93,14 @@ impl<const N: usize> Data<'_, N> {
     /// `error` (the unbiased risk of Craven & Wahba 1979, Mallows' C_L).
     pub(super) fn within(&self, error: f64) -> Result<Smooth<N>, IllConditioned> {
         let trials = Trials::new(self);
-        let risk = |ln: f64| trials.at(ln).map(|trial| trial.risk(error));
-        let least_risk = least(risk)?;
-        let excess = |ln: f64| match trials.at(ln) {
-            Some(trial) => trial.squares - error * error * trial.freedom,
-            // Equations too stiff to solve stand for a curve too smooth.
-            None => f64::MAX,
-        };
-        let ln = if excess(least_risk) >= 0.0 {
-            least_risk
-        } else if excess(HIGHEST) <= 0.0 {
-            HIGHEST
-        } else {
-            bracketed(least_risk, HIGHEST, LAMBDA_TOLERANCE, excess)
-        };
+        let ln = trials.matching(error)?;
         trials.smooth(ln, Some(error))
     }
 
     /// The curve of the least generalized cross-validation score, which finds the error itself.
     pub(super) fn cross_validated(&self) -> Result<Smooth<N>, IllConditioned> {
         let trials = Trials::new(self);
-        let ln = least(|ln| trials.at(ln).and_then(|trial| trial.score()))?;
+        let ln = trials.cross_validated()?;
         trials.smooth(ln, None)
     }
 }
@@ -198,6 +185,31 @@ impl<'a, const N: usize> Trials<'a, N> {
             repeated,
             balanced,
         }
+    }
+
+    /// ln λ at which the residuals match an error, or of the least risk where they do so nowhere beyond.
+    fn matching(&self, error: f64) -> Result<f64, IllConditioned> {
+        let least_risk = self.least_risk(error)?;
+        let excess = |ln: f64| match self.at(ln) {
+            Some(trial) => trial.squares - error * error * trial.freedom,
+            // Equations too stiff to solve stand for a curve too smooth.
+            None => f64::MAX,
+        };
+        if excess(least_risk) >= 0.0 {
+            Ok(least_risk)
+        } else if excess(HIGHEST) <= 0.0 {
+            Ok(HIGHEST)
+        } else {
+            Ok(bracketed(least_risk, HIGHEST, LAMBDA_TOLERANCE, excess))
+        }
+    }
+
+    fn least_risk(&self, error: f64) -> Result<f64, IllConditioned> {
+        least(|ln| self.at(ln).map(|trial| trial.risk(error)))
+    }
+
+    fn cross_validated(&self) -> Result<f64, IllConditioned> {
+        least(|ln| self.at(ln).and_then(|trial| trial.score()))
     }
 
     fn at(&self, ln: f64) -> Option<Trial<N>> {
@@ -332,3 +344,6 @@ impl Spread {
         error * ends.third[usize::from(d > 0.0)]
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -4,9 +4,9 @@ use super::assessment::{Extremes, Finding, Rider, RuleResult, SeatResult};
 use super::case::Judging;
 use super::holds::{Way, for_seat, in_scenario};
 use super::plan::View;
-use super::why::PartSeries;
+use super::why::PartsAt;
 use crate::envelope::{self, Breach, Judgement, Scope};
-use crate::input::{Axis, Envelope, GravityTerm, Rule, RuleKind, Seat};
+use crate::input::{Envelope, GravityTerm, Rule, RuleKind, Seat};
 use crate::loads::{self, AxesG, Filtered};
 
 /// How far back, in delays, a filter gives the record a noticeable weight.
@@ -33,10 +33,9 @@ impl SeatView<'_> {
         let mut by_envelope = vec![(Vec::new(), Vec::new()); envelopes.len()];
         for view in &self.judging.plan.views {
             let record = self.record(view);
-            let mut parts = PartsOfView::new(self, view, &record);
             for &index in &view.envelopes {
                 let envelope = &envelopes[index];
-                by_envelope[index] = self.against(envelope, index, &record, &mut parts);
+                by_envelope[index] = self.against(envelope, index, view, &record);
             }
         }
         let (rules, findings): (Vec<_>, Vec<_>) = by_envelope.into_iter().unzip();
@@ -48,8 +47,8 @@ impl SeatView<'_> {
         &self,
         envelope: &Envelope,
         index: usize,
+        view: &View,
         record: &Filtered,
-        parts: &mut PartsOfView<'_>,
     ) -> (Vec<RuleResult>, Vec<Finding>) {
         let (mut rules, mut findings) = (Vec::new(), Vec::new());
         for (rule, of_train) in envelope.rules.iter().zip(&self.judging.of_train[index]) {
@@ -57,7 +56,7 @@ impl SeatView<'_> {
             let scope = self.scope(rule, record);
             let state = &self.judging.state;
             if let Some(judgement) = envelope::judge(envelope, rule, record, &scope, state) {
-                findings.extend(self.findings(rule, &judgement, parts));
+                findings.extend(self.findings(rule, &judgement, view, record));
                 rules.push(self.placed(judgement));
             }
         }
@@ -100,18 +99,23 @@ impl SeatView<'_> {
         &self,
         rule: &Rule,
         judgement: &Judgement,
-        parts: &mut PartsOfView<'_>,
+        view: &View,
+        record: &Filtered,
     ) -> Vec<Finding> {
         let RuleKind::Sustained(demand) = &rule.kind else {
             return Vec::new();
         };
         let breaches = judgement.findings.iter();
         breaches
-            .map(|breach| self.finding(judgement, breach, parts.along(demand.axis)))
+            .map(|breach| {
+                let position = breach.worst.peak_position;
+                let parts = PartsAt::at(self, view, record, demand.axis, position);
+                self.finding(judgement, breach, &parts)
+            })
             .collect()
     }
 
-    fn finding(&self, judgement: &Judgement, breach: &Breach, parts: &PartSeries<'_>) -> Finding {
+    fn finding(&self, judgement: &Judgement, breach: &Breach, parts: &PartsAt<'_>) -> Finding {
         let (variant, scenario) = self.judging.plan.names(self.judging.id);
         let samples = &self.judging.samples;
         let time_s = breach.worst.peak_time_s;
@@ -175,30 +179,6 @@ impl SeatView<'_> {
         let rate_hz = self.judging.samples.rate_hz;
         let station_m = value_at(self.station_m, rate_hz, time_s);
         self.judging.design.spine.wrapped_m(station_m)
-    }
-}
-
-/// The parts of a view's loads, worked out for an axis when its first finding asks for them.
-struct PartsOfView<'a> {
-    seat: &'a SeatView<'a>,
-    view: &'a View,
-    record: &'a Filtered,
-    axes: [Option<PartSeries<'a>>; 3],
-}
-
-impl<'a> PartsOfView<'a> {
-    fn new(seat: &'a SeatView<'a>, view: &'a View, record: &'a Filtered) -> Self {
-        Self {
-            seat,
-            view,
-            record,
-            axes: [None, None, None],
-        }
-    }
-
-    fn along(&mut self, axis: Axis) -> &PartSeries<'a> {
-        self.axes[axis as usize]
-            .get_or_insert_with(|| PartSeries::new(self.seat, self.view, self.record, axis))
     }
 }
 

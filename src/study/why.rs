@@ -14,50 +14,49 @@ use crate::input::{Axis, GravityTerm, Seat};
 use crate::loads::{self, Filtered, car_from_rider};
 use crate::spine::SpinePoint;
 
-/// The filtered parts of a seat's load along one rider axis.
-pub(super) struct PartSeries<'a> {
+/// The filtered parts of a seat's load along one rider axis, up to a moment.
+pub(super) struct PartsAt<'a> {
     seat: &'a Seat,
     axis: Axis,
     record: &'a Filtered,
-    gravity_g: Vec<f64>,
-    normal_g: Vec<f64>,
-    tangential_g: Vec<f64>,
+    /// Gravity, normal and tangential at that moment, g.
+    parts_g: [f64; 3],
 }
 
-impl<'a> PartSeries<'a> {
-    /// Splits the load that `record` holds along an axis.
-    pub(super) fn new(
+impl<'a> PartsAt<'a> {
+    /// Splits the load that `record` holds along an axis at a position of it.
+    ///
+    /// The parts are filtered from as far back as the filter remembers, so that they sum to the load.
+    pub(super) fn at(
         view_of: &SeatView<'a>,
         view: &View,
         record: &'a Filtered,
         axis: Axis,
+        position: f64,
     ) -> Self {
-        let count = record.axes_g[axis as usize].len();
+        let memory = (loads::memory_s(view.filter, record.rate_hz) * record.rate_hz).ceil();
+        let first = (position.floor() - memory).max(0.0) as usize;
         let mut parts = [const { Vec::new() }; 3];
-        for sample in 0..count {
+        for sample in first..=position.ceil() as usize {
             let unfiltered_g = unfiltered_parts_g(view_of, view.gravity, axis, sample);
             for (part, value_g) in parts.iter_mut().zip(unfiltered_g) {
                 part.push(value_g);
             }
         }
-        let [gravity_g, normal_g, tangential_g] =
-            loads::filtered(&parts, record.rate_hz, view.filter).axes_g;
+        let filtered = loads::filtered(&parts, record.rate_hz, view.filter);
+        let read = |part_g: Vec<f64>| read_at(&part_g, position - first as f64);
         Self {
             seat: view_of.seat,
             axis,
             record,
-            gravity_g,
-            normal_g,
-            tangential_g,
+            parts_g: filtered.axes_g.map(read),
         }
     }
 
     /// The state of things at a spell's peak.
     pub(super) fn why(&self, spell: &Spell, speed_m_s: f64, spine: &SpinePoint) -> Why {
-        let at = |part_g: &[f64]| read_at(part_g, spell.peak_position);
-        let (gravity, normal) = (at(&self.gravity_g), at(&self.normal_g));
-        let tangential = at(&self.tangential_g);
-        let load_g = at(&self.record.axes_g[self.axis as usize]);
+        let [gravity, normal, tangential] = self.parts_g;
+        let load_g = read_at(&self.record.axes_g[self.axis as usize], spell.peak_position);
         Why {
             speed_m_s,
             radius_m: spine.radius_m(),

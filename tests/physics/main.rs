@@ -18,6 +18,7 @@ mod composite;
 mod convergence;
 mod crest;
 mod drives;
+mod fits;
 mod fixture;
 mod geometry;
 mod hilly;

@@ -1,18 +1,20 @@
 //! An audit as machines read it: fixed keys in a fixed order, null for what does not exist.
 //!
-//!     {"crestfall": "0.1.0", "track": "...", "length_m": 0, "closed": false,
-//!      "extremes": {"radius_m": {"min": 0, "min_station_m": 0}, "bend_rate_1_m2": {"max": 0, "max_station_m": 0},
-//!         "height_m": {"max": 0, "max_station_m": 0, "min": 0, "min_station_m": 0}, "grade_deg": {}, "bank_left_deg": {},
-//!         "roll_rate_rad_m": {}, "pitch_rate_rad_m": {}, "yaw_rate_rad_m": {}},
-//!      "corners": {"count": 0, "bend_rate_1_m2": {"max": 0, "max_station_m": 0}, "roll_acceleration_rad_m2": {}},
-//!      "ends": {"distance_m": 0, "spacings": 0, "direction_deg": 0, "bank_left_deg": 0, "meet": false},
-//!      "points": {"count": 0, "left_out": [57], "spacing_m": {"least": 0, "median": 0, "largest": 0}},
-//!      "fit": {"method": "exact|within|grid|cross-validated", "error_m": 0, "roll_error_deg": 0,
-//!         "cross_validated_m": 0, "residual_rms_m": 0, "worst": [{"row": 0, "residual_m": 0, "studentised": 0}]},
-//!      "noise": {"speed_m_s": 0, "wanted_g": 0.05,
-//!         "spine": {"largest_g": 0, "largest_station_m": 0, "most_g": 0, "median_g": 0, "above": 0}, "interpolated": {},
-//!         "remedy": {"error_m": 0, "spacing_m": 0, "law": "interpolated|measured", "power": 0}},
-//!      "findings": [{"kind": "...", "row": 0, "station_m": 0, "size": 0, "against": 0, "unit": "..."}]}
+//! ```text
+//! {"crestfall": "0.1.0", "track": "...", "length_m": 0, "closed": false,
+//!  "extremes": {"radius_m": {"min": 0, "min_station_m": 0}, "bend_rate_1_m2": {"max": 0, "max_station_m": 0},
+//!     "height_m": {"max": 0, "max_station_m": 0, "min": 0, "min_station_m": 0}, "grade_deg": {}, "bank_left_deg": {},
+//!     "roll_rate_rad_m": {}, "pitch_rate_rad_m": {}, "yaw_rate_rad_m": {}},
+//!  "corners": {"count": 0, "bend_rate_1_m2": {"max": 0, "max_station_m": 0}, "roll_acceleration_rad_m2": {}},
+//!  "ends": {"distance_m": 0, "spacings": 0, "direction_deg": 0, "bank_left_deg": 0, "meet": false},
+//!  "points": {"count": 0, "left_out": [57], "spacing_m": {"least": 0, "median": 0, "largest": 0}},
+//!  "fit": {"method": "exact|within|grid|cross-validated", "error_m": 0, "roll_error_deg": 0,
+//!     "cross_validated_m": 0, "residual_rms_m": 0, "worst": [{"row": 0, "residual_m": 0, "studentised": 0}]},
+//!  "noise": {"speed_m_s": 0, "wanted_g": 0.05,
+//!     "spine": {"largest_g": 0, "largest_station_m": 0, "most_g": 0, "median_g": 0, "above": 0}, "interpolated": {},
+//!     "remedy": {"error_m": 0, "spacing_m": 0, "law": "interpolated|measured", "power": 0}},
+//!  "findings": [{"kind": "...", "row": 0, "station_m": 0, "size": 0, "against": 0, "unit": "..."}]}
+//! ```
 //!
 //! `corners` is null for points; `points`, `fit` and `noise` are null for elements. `most_g` is what
 //! nineteen twentieths of the track lie below, `above` the part of it beyond `wanted_g`; loads of noise are
