@@ -18,7 +18,7 @@ pub use points::{Points, Spacing};
 
 use super::report::FitReport;
 use super::{Shape, Spine};
-use crate::input::{Track, TrackSource};
+use crate::input::{PointTable, Track, TrackSource};
 
 /// The audit of a spine.
 #[derive(Clone, Debug, PartialEq)]
@@ -138,7 +138,7 @@ fn misstated(report: &FitReport, found_m: Option<f64>) -> Option<Finding> {
     let (stated_m, found_m) = (report.error_m?, found_m?);
     let kind = if stated_m > OVERSTATED * found_m {
         FindingKind::ErrorOverstated
-    } else if stated_m < UNDERSTATED * found_m {
+    } else if is_understated(stated_m, found_m) {
         FindingKind::ErrorUnderstated
     } else {
         return None;
@@ -150,4 +150,14 @@ fn misstated(report: &FitReport, found_m: Option<f64>) -> Option<Finding> {
         size: Some(stated_m),
         against: Some(found_m),
     })
+}
+
+fn is_understated(stated_m: f64, found_m: f64) -> bool {
+    stated_m < UNDERSTATED * found_m
+}
+
+/// The stated error of a point of the centre line and the far larger one that its points show, m.
+pub fn understated_error(table: &PointTable, report: &FitReport) -> Option<(f64, f64)> {
+    let (stated_m, found_m) = (report.error_m?, noise::cross_validated(table)?);
+    is_understated(stated_m, found_m).then_some((stated_m, found_m))
 }

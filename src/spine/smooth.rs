@@ -75,6 +75,11 @@ const LEAST_REPEATED: usize = 200;
 /// roughness of the prior, far above that of a track. Measured: see `tests/physics/noise.rs`.
 const PRIOR_KEPT: f64 = 0.6;
 
+/// Least part of a point's variance that its residual is held against. Where points lie far apart the
+/// curve is drawn close to each, and its bias at sharp bends is far above the little noise that is left
+/// in a residual there. More would hide slips: a curve follows a gross one to a tenth of its size.
+const LEAST_LEFT: f64 = 0.25;
+
 /// Why nothing could be fitted.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(super) struct IllConditioned;
@@ -259,7 +264,7 @@ impl<'a, const N: usize> Trials<'a, N> {
         };
         // Near the ends the curve is off by its bias, which is no fault of the points.
         let own = |i: usize| {
-            let left = (1.0 - trial.smoothed.leverages[i + self.repeated]).max(1e-3);
+            let left = (1.0 - trial.smoothed.leverages[i + self.repeated]).max(LEAST_LEFT);
             error * (left / self.data.weights[i]).sqrt()
         };
         let beyond_bias = |(i, r): (usize, &f64)| {

@@ -8,7 +8,7 @@ use super::plan::{Design, Plan};
 use super::selection::suggest;
 use crate::diagnostic::Diagnostic;
 use crate::input::{Goal, PointTable, Rule, Scenario, TrackSource, Zone};
-use crate::spine::Outlier;
+use crate::spine::{Outlier, understated_error};
 
 /// All mistakes of a plan.
 pub(super) fn check(plan: &Plan<'_>) -> Vec<Diagnostic> {
@@ -86,7 +86,20 @@ fn check_blunders(design: &Design<'_>) -> Vec<Diagnostic> {
         let hint = "`crestfall spine` lists them all";
         mistakes.push(Diagnostic::error(message).at(&table.place).hint(hint));
     }
+    mistakes.extend(understated_error(table, report).map(|sizes| error_too_small(table, sizes)));
     mistakes
+}
+
+/// The curve follows the noise of its points, and no margin would tell.
+fn error_too_small(table: &PointTable, (stated_m, found_m): (f64, f64)) -> Diagnostic {
+    Diagnostic::error(format!(
+        "the stated error makes {:.2} mm of a point of the centre line, and the points show {:.2} mm",
+        1e3 * stated_m,
+        1e3 * found_m
+    ))
+    .at(&table.place)
+    .hint("state a larger error or use `fit: auto`; `crestfall spine` shows rows that stick out")
+    .hint("where points lie metres apart, give them closer together")
 }
 
 fn off_the_curve(table: &PointTable, blunder: &Outlier, too_many: bool) -> Diagnostic {
@@ -105,8 +118,8 @@ fn off_the_curve(table: &PointTable, blunder: &Outlier, too_many: bool) -> Diagn
             "correct the row, or leave it out with `except: [{row}]` and say why in a comment"
         ))
         .hint(
-            "where a straight meets an arc at once, no row is wrong: give the points larger errors \
-             in a column `error_mm`",
+            "where a straight meets an arc at once, or points lie far apart in a sharp bend, no row is \
+             wrong: give points closer together, or larger errors there in a column `error_mm`",
         )
 }
 
