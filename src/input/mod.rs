@@ -50,7 +50,7 @@ pub use read::{read_envelope, read_study, read_track};
 pub use schema::schema;
 pub use study::{InputFile, Study, Variant};
 pub use track::{Change, Ease, Element, ElementTrack, Extent, Landmark, Start, Track, TrackSource};
-pub use train::{Car, Inertia, Seat, Train};
+pub use train::{Car, Inertia, SHARED_AXLE_M, Seat, Train};
 
 /// The kinds of YAML files.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]

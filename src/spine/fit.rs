@@ -17,13 +17,14 @@ use crate::numerics::quadrature::integrate;
 use crate::numerics::quintic::{Grid, Quintic};
 
 /// Between neighbouring chords a curve may turn by no more than this: beyond, the points lie too
-/// far apart to say how it runs between them.
+/// far apart to say how it runs between them (our choice: a circle of 2 m radius every metre).
 const LARGEST_TURN_DEG: f64 = 30.0;
 
-/// Steepest grade at which a bank, measured from the level frame, still means something.
+/// Steepest grade at which a bank, measured from the level frame, still means something (our choice:
+/// its rate goes with the tangent of the grade, 11 rad/rad here).
 const STEEPEST_WITH_BANK_DEG: f64 = 85.0;
 
-/// Least sine of the angle between a fitted up (or left) vector and the track.
+/// Least sine of the angle between a fitted up (or left) vector and the track (our choice: 12 deg).
 const LEAST_ACROSS: f64 = 0.2;
 
 /// A curve through points with its attitude.
@@ -498,7 +499,8 @@ fn weights(table: &PointTable) -> (Option<f64>, Vec<f64>) {
 /// that would tell.
 const NO_NOISE_1_M: f64 = 1e-6;
 
-/// An error found by cross-validation up to this many times that of rounding is taken to be rounding.
+/// An error found by cross-validation up to this many times that of rounding is taken to be rounding
+/// (our choice: it is found to a tenth or better, see `tests/physics/noise.rs`).
 const LIKE_ROUNDING: f64 = 1.5;
 
 impl Knots {
@@ -566,16 +568,20 @@ impl Knots {
         }
     }
 
-    /// Whether interpolating points of this error would tell in a curvature.
+    /// Whether interpolating points of this error would tell in a curvature, where they lie closest.
     fn is_noise(&self, deviation: f64) -> bool {
-        let n = self.chord_m.len();
+        let closest = self.chord_m.windows(2).map(|pair| pair[1] - pair[0]);
+        let closest_m = closest.fold(f64::INFINITY, f64::min);
         let noise = Noise::Interpolated {
             deviation,
-            parameters: self.chord_m.clone(),
+            parameters: (0..=CENTRAL).map(|i| i as f64 * closest_m).collect(),
         };
-        noise.half_width(self.chord_m[n / 2], 2) > NO_NOISE_1_M
+        noise.half_width(0.5 * CENTRAL as f64 * closest_m, 2) > NO_NOISE_1_M
     }
 }
+
+/// Intervals of an even table in whose middle the ends do not tell.
+const CENTRAL: usize = 20;
 
 impl<const N: usize> Laid<N> {
     fn smooth(smooth: Smooth<N>, method: FitMethod) -> Self {

@@ -44,7 +44,7 @@ pub struct Poses {
     last_m: f64,
     /// Length of a closed spine.
     lap_m: Option<f64>,
-    /// Where an axle meets a break of the spine, increasing; a closed spine has none.
+    /// Both ends, and where an axle meets a break of the spine, increasing.
     breaks_m: Vec<f64>,
     /// How far the spine may be off, every [`MARGIN_STEP_M`]; empty where that is not known.
     margins: Vec<Margin>,
@@ -111,7 +111,9 @@ impl Poses {
             chain.leading_m(last_axle, 0.0)?
         };
         let last_m = spine.length_m();
-        if first_m >= last_m {
+        // A train as long as a closed track would bite its tail.
+        let laps = spine.is_closed() && layout.length_m() >= last_m;
+        if first_m >= last_m || laps {
             let train_m = layout.length_m();
             return Err(PoseError::TrainTooLong {
                 train_m,
@@ -162,16 +164,6 @@ impl Poses {
         let from = self.breaks_m.partition_point(|&q| q <= a.min(b));
         let to = self.breaks_m.partition_point(|&q| q < a.max(b));
         &self.breaks_m[from..to.max(from)]
-    }
-
-    /// Length of the spine, m.
-    pub fn track_length_m(&self) -> f64 {
-        self.last_m
-    }
-
-    /// Number of cars.
-    pub fn car_count(&self) -> usize {
-        self.cars.len()
     }
 
     /// Number of axles, shared ones counted once.
