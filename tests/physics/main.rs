@@ -14,7 +14,6 @@ mod air;
 mod bodies;
 mod brakes;
 mod circles;
-mod composite;
 mod convergence;
 mod crest;
 mod drives;
