@@ -112,12 +112,17 @@ impl Poses {
         };
         let last_m = spine.length_m();
         // A train as long as a closed track would bite its tail.
-        let laps = spine.is_closed() && layout.length_m() >= last_m;
-        if first_m >= last_m || laps {
-            let train_m = layout.length_m();
-            return Err(PoseError::TrainTooLong {
-                train_m,
-                track_m: last_m,
+        let (train_m, track_m) = (layout.length_m(), last_m);
+        if train_m >= track_m {
+            return Err(PoseError::TrainTooLong { train_m, track_m });
+        }
+        // The last axle at the start puts the first one off the end only round bends too sharp for it.
+        if first_m >= last_m {
+            let (axle, spacing_m, station_m) = (last_axle + 1, train_m, last_m);
+            return Err(PoseError::NoPlaceForAxle {
+                axle,
+                spacing_m,
+                station_m,
             });
         }
         let knots = knots(spine, &chain, &layout, (first_m, last_m))?;

@@ -326,3 +326,22 @@ fn machines_read_si_whatever_people_read() {
     };
     assert_eq!(json("us"), json("si"));
 }
+
+/// At a rate below the one at which two solutions are compared, a brake that grips at the second
+/// sample makes a jump there: it is taken in, not stumbled over.
+#[test]
+fn a_low_rate_with_a_jump_at_the_start() {
+    let study = Fixture::level();
+    study.replace(
+        "ride.study.yaml",
+        "crestfall: 1",
+        "crestfall: 1\nrate: 20 Hz",
+    );
+    study.replace(
+        "ride.operation.yaml",
+        "scenarios:",
+        "zones:\n  - {name: grip, kind: clamp, from: 10.2 m, to: 10.9 m, force: 9 kN, release_speed: 9.9 m/s}\nscenarios:",
+    );
+    let ran = study.run(&["check", "ride.study.yaml", "--format", "json"]);
+    assert!(ran.status.is_some_and(|status| status < 2), "{ran:?}");
+}
