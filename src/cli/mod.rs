@@ -22,12 +22,19 @@ use crestfall::input::{self, Study};
 use crestfall::report;
 use crestfall::study::Selection;
 
+/// What `--help` says besides.
+const START: &str = "\
+To begin with a small study that runs:
+
+    crestfall new first-ride
+    crestfall check first-ride/ride.study.yaml";
+
 /// Rider loads of coasters and track rides, held against the acceptance envelopes you supply.
 ///
-/// Exit status: 0 everything inside the envelopes given; 1 something outside, too close to call or
-/// not assessed; 2 the inputs or the command line are wrong, or a result could not be written.
+/// Exit status: 0 everything inside the envelopes given; 1 something outside, up for review,
+/// too close to call or not assessed; 2 the inputs or the command line are wrong, or a result could not be written.
 #[derive(Parser)]
-#[command(name = "crestfall", version)]
+#[command(name = "crestfall", version, after_help = START)]
 struct Arguments {
     #[command(subcommand)]
     command: Command,
@@ -60,7 +67,8 @@ struct StudyArguments {
     /// Only this scenario; may be given several times
     #[arg(long = "scenario", value_name = "NAME")]
     scenarios: Vec<String>,
-    /// Only this seat, such as `1-front-left`; may be given several times
+    /// Only this seat: number of the car from the front, then its name, such as `1-front-left`;
+    /// may be given several times
     #[arg(long = "seat", value_name = "CAR-SEAT")]
     seats: Vec<String>,
 }

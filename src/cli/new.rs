@@ -67,7 +67,7 @@ fn refuse_to_overwrite(folder: &Path) -> Result<(), Failure> {
         true => Ok(()),
         false => Err(Failure::Input(vec![
             Diagnostic::error(format!(
-                "{} holds {} already, expected a folder without",
+                "{} already holds {}, expected a folder without these files",
                 folder.display(),
                 taken.join(", ")
             ))

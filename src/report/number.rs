@@ -47,7 +47,35 @@ fn rounded(value: f64) -> Option<f64> {
 
 /// A load with its sign.
 pub(super) fn load(value_g: f64) -> String {
-    format!("{value_g:+.2} g")
+    format!("{} g", part(value_g))
+}
+
+/// The same without its unit; what rounds to nothing has no sign.
+pub(super) fn part(value_g: f64) -> String {
+    let text = format!("{value_g:+.2}");
+    match text.as_str() {
+        "+0.00" | "-0.00" => "0.00".to_owned(),
+        _ => text,
+    }
+}
+
+/// An angle with its sign.
+pub(super) fn angle(value_rad: f64) -> String {
+    let text = format!("{:.1} deg", value_rad.to_degrees());
+    match text.strip_prefix('-') {
+        Some(zero) if zero.starts_with("0.0 ") => zero.to_owned(),
+        _ => text,
+    }
+}
+
+/// A bank with its side; what rounds to nothing has none.
+pub(super) fn bank(left_rad: f64) -> String {
+    let size = angle(left_rad.abs());
+    match (size.as_str(), left_rad < 0.0) {
+        ("0.0 deg", _) => size,
+        (_, true) => format!("{size} right"),
+        (_, false) => format!("{size} left"),
+    }
 }
 
 /// A utilisation, with as many digits as it takes to show on which side of 1 it lies; `-` where there is none.
@@ -59,6 +87,17 @@ pub(super) fn utilisation(value: f64) -> String {
         .map(|digits| format!("{value:.digits$}"))
         .find(|text| value == 1.0 || text.parse::<f64>().is_ok_and(|shown| shown != 1.0))
         .unwrap_or_else(|| value.to_string())
+}
+
+/// A utilisation and its band to the same place; a band that would show as nothing is left out.
+pub(super) fn utilisation_with_band(value: f64, band: f64) -> String {
+    let used = utilisation(value);
+    let digits = used.split_once('.').map_or(3, |(_, places)| places.len());
+    let shown = format!("{band:.digits$}");
+    match shown.parse::<f64>() {
+        Ok(number) if number > 0.0 && value.is_finite() => format!("{used} ±{shown}"),
+        _ => used,
+    }
 }
 
 /// A length of time.
@@ -224,6 +263,24 @@ mod tests {
         assert_eq!(utilisation(1.0), "1.000");
         assert_eq!(utilisation(1.234_56), "1.235");
         assert_ne!(utilisation(1.0 + f64::EPSILON), "1.000");
+    }
+
+    #[test]
+    fn a_band_shows_where_it_counts() {
+        assert_eq!(utilisation_with_band(0.333_7, 0.446_9), "0.334 ±0.447");
+        assert_eq!(utilisation_with_band(1.000_04, 0.000_1), "1.00004 ±0.00010");
+        assert_eq!(utilisation_with_band(0.642, 5.6e-6), "0.642");
+        assert_eq!(utilisation_with_band(f64::NAN, 0.1), "-");
+    }
+
+    #[test]
+    fn what_rounds_to_nothing_has_no_sign_and_no_side() {
+        assert_eq!(load(-0.001), "0.00 g");
+        assert_eq!(load(-0.006), "-0.01 g");
+        assert_eq!(angle(-1e-9), "0.0 deg");
+        assert_eq!(bank(-1e-9), "0.0 deg");
+        assert_eq!(bank(-0.5_f64.to_radians()), "0.5 deg right");
+        assert_eq!(bank(36_f64.to_radians()), "36.0 deg left");
     }
 
     /// 26.8224 m/s are 60 mph and 30.48 m are 100 ft by the definition of the foot.

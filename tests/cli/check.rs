@@ -122,6 +122,60 @@ fn outside_leads_with_the_worst_place_and_is_status_1() {
     );
 }
 
+/// The place says why and what would mend it, in numbers with their units.
+#[test]
+fn a_place_says_why_and_what_would_mend_it() {
+    let ran = Fixture::valley().run(&["check", "ride.study.yaml"]);
+    let lines = ran.out.lines().map(str::trim);
+    let lines: Vec<_> = lines.skip_while(|l| !l.contains("(pull-out)")).collect();
+    assert!(lines[1].starts_with("worst: seat "), "{ran:?}");
+    assert!(
+        lines[2].starts_with("there: ") && lines[2].contains(" m/s, radius "),
+        "{ran:?}"
+    );
+    assert!(
+        lines[3].starts_with("peak +") && lines[3].contains(": gravity +"),
+        "{ran:?}"
+    );
+    assert!(lines[4].starts_with("at the limit with "), "{ran:?}");
+}
+
+/// What one variant leaves must not hide what another keeps.
+#[test]
+fn each_variant_has_its_own_outcome_and_table() {
+    let study = Fixture::valley();
+    study.write(
+        "eased.track.yaml",
+        "crestfall: 1\ntrack: Eased\nstart: {z: 30 m, heading: 90 deg}\nelements:\n  - {name: run, length: 70 m}\n",
+    );
+    study.replace(
+        "ride.study.yaml",
+        "  as-drawn: ride.track.yaml\n",
+        "  as-drawn: ride.track.yaml\n  eased: eased.track.yaml\n",
+    );
+    let ran = study.run(&["check", "ride.study.yaml"]);
+    ran.expect_status(1);
+    let has = |line: &str| ran.out.lines().any(|l| l.trim().starts_with(line));
+    assert!(has("as-drawn: outside, "), "{ran:?}");
+    assert!(has("eased: inside, 0 findings in 2 cases"), "{ran:?}");
+    for variant in ["as-drawn", "eased"] {
+        assert!(has(&format!("worst of each rule, {variant}")), "{ran:?}");
+        assert!(has(&format!("cases, {variant}")), "{ran:?}");
+    }
+}
+
+/// On a level track nobody is pushed sideways: no seat and no scenario is the worst.
+#[test]
+fn a_rule_without_a_load_names_nobody() {
+    let ran = Fixture::level().run(&["check", "ride.study.yaml"]);
+    let row = ran.out.lines().find(|line| line.contains("y-left"));
+    let cells: Vec<_> = row.expect("the rule").split_whitespace().collect();
+    assert_eq!(
+        cells,
+        ["y-left", "inside", "0.000", "-", "-", "-", "-", "-"]
+    );
+}
+
 /// The parts of a finding's load sum to its peak, and its window holds its moment.
 #[test]
 fn a_finding_says_where_when_and_why() {

@@ -1,7 +1,7 @@
 //! An audit as people read it: what has to be looked at first, then the figures; at most 100 columns.
 
 use crate::report::number::{Units, degrees, fine_degrees, noise as noise_g, percent, times};
-use crate::report::text::layout::{counted, list, new_table, section, wrapped};
+use crate::report::text::layout::{counted, list, section, wrapped};
 use crate::spine::{
     Audit, Extreme, Finding, FindingKind, FitMethod, FitReport, Floor, Law, NoiseFloor, Points,
     Range, WANTED_G,
@@ -144,7 +144,7 @@ fn way_out(kind: FindingKind) -> Option<&'static str> {
 }
 
 fn extremes(audit: &Audit, units: Units) -> String {
-    let mut table = new_table(&["", "largest", "at", "smallest", "at"]);
+    let mut table = Vec::<Vec<String>>::new();
     let found = &audit.extremes;
     let at = |e: Extreme| units.station(e.station_m);
     let none = String::new;
@@ -179,10 +179,16 @@ fn extremes(audit: &Audit, units: Units) -> String {
     ];
     for (name, cells) in rows {
         if let Some(cells) = cells {
-            table.add_row([name.to_owned()].into_iter().chain(cells));
+            table.push(
+                [name.to_owned()]
+                    .into_iter()
+                    .chain(cells)
+                    .into_iter()
+                    .collect(),
+            );
         }
     }
-    section("extremes", &table)
+    section("extremes", &["", "largest", "at", "smallest", "at"], &table)
 }
 
 fn banked(left_rad: f64) -> String {
@@ -302,12 +308,22 @@ fn rows(audit: &Audit, units: Units) -> String {
     let Some(report) = audit.fit.as_ref().filter(|f| f.method != FitMethod::Exact) else {
         return String::new();
     };
-    let mut table = new_table(&["row", "off the curve", "times its error"]);
-    for outlier in report.worst.iter().take(ROWS_SHOWN) {
-        let shown = [units.fine(outlier.residual_m), times(outlier.studentised)];
-        table.add_row([outlier.row.to_string()].into_iter().chain(shown));
-    }
-    section("rows farthest from the curve for their error", &table)
+    let row = |outlier: &crate::spine::Outlier| {
+        let (off, times) = (units.fine(outlier.residual_m), times(outlier.studentised));
+        vec![outlier.row.to_string(), off, times]
+    };
+    let rows = report
+        .worst
+        .iter()
+        .take(ROWS_SHOWN)
+        .map(row)
+        .collect::<Vec<_>>();
+    let header = ["row", "off the curve", "times its error"];
+    section(
+        "rows farthest from the curve for their error",
+        &header,
+        &rows,
+    )
 }
 
 fn noise(audit: &Audit, units: Units) -> Vec<String> {

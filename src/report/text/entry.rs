@@ -48,6 +48,17 @@ pub(super) fn case_name(case: &Case) -> String {
     format!("{} / {}", case.variant, case.scenario)
 }
 
+/// Names of the variants, in file order.
+pub(super) fn variants(assessment: &Assessment) -> Vec<&str> {
+    let mut names: Vec<&str> = assessment
+        .cases
+        .iter()
+        .map(|c| c.variant.as_str())
+        .collect();
+    names.dedup();
+    names
+}
+
 pub(super) fn entries(assessment: &Assessment) -> Vec<Entry<'_>> {
     let mut entries = Vec::new();
     for case in &assessment.cases {
