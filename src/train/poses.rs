@@ -111,8 +111,13 @@ impl Poses {
             chain.leading_m(last_axle, 0.0)?
         };
         let last_m = spine.length_m();
-        if first_m >= last_m {
-            let train_m = layout.length_m();
+        let train_m = layout.length_m();
+        let meets_itself = || -> Result<bool, PoseError> {
+            let stations = chain.stations_m(last_m)?;
+            let span_m = last_m - stations[last_axle];
+            Ok(spine.is_closed() && span_m.max(train_m) >= last_m)
+        };
+        if first_m >= last_m || meets_itself()? {
             return Err(PoseError::TrainTooLong {
                 train_m,
                 track_m: last_m,

@@ -4,6 +4,7 @@ mod check;
 mod export;
 mod faults;
 mod fixture;
+mod hostile;
 mod new;
 mod rules;
 mod speed_rules;
