@@ -179,6 +179,9 @@ impl<'a> Table<'a> {
             return None;
         }
         self.check_points(header.layout, &values, &rows);
+        if request.closed {
+            self.check_seam(header.layout, &values, &rows);
+        }
         if rows.len() < FEWEST {
             let message = format!("found {} points, expected at least {FEWEST}", rows.len());
             self.error(first.clone(), message);
@@ -322,12 +325,8 @@ impl<'a> Table<'a> {
                 );
             }
         }
-        let place_of = |row: &[f64]| match layout {
-            Layout::Rails => [0, 1, 2].map(|axis| row[axis] + row[axis + 3]),
-            _ => [row[0], row[1], row[2]],
-        };
         for (index, pair) in values.windows(2).enumerate() {
-            if place_of(&pair[0]) == place_of(&pair[1]) {
+            if place_of(layout, &pair[0]) == place_of(layout, &pair[1]) {
                 let mistake = self
                     .mistake(
                         rows[index + 1].span.clone(),
@@ -336,6 +335,22 @@ impl<'a> Table<'a> {
                     .also(&self.place(rows[index].span.clone()), "the one before");
                 self.push(mistake.hint("take one of the two lines out"));
             }
+        }
+    }
+
+    /// A closed track comes back to its first point by itself.
+    fn check_seam(&mut self, layout: Layout, values: &[Vec<f64>], rows: &[Row]) {
+        let (Some(first), [.., last]) = (values.first(), values) else {
+            return;
+        };
+        if values.len() > 1 && place_of(layout, first) == place_of(layout, last) {
+            let mistake = self
+                .mistake(
+                    rows[rows.len() - 1].span.clone(),
+                    "the last point of this closed track is the first again",
+                )
+                .also(&self.place(rows[0].span.clone()), "the first");
+            self.push(mistake.hint("take the last line out: `closed: true` joins the ends"));
         }
     }
 
@@ -360,6 +375,14 @@ impl<'a> Table<'a> {
             true => self.found.push(mistake),
             false => self.left_out += 1,
         }
+    }
+}
+
+/// The point of a row, or what is the same for rails with the same middle.
+fn place_of(layout: Layout, row: &[f64]) -> [f64; 3] {
+    match layout {
+        Layout::Rails => [0, 1, 2].map(|axis| row[axis] + row[axis + 3]),
+        _ => [row[0], row[1], row[2]],
     }
 }
 

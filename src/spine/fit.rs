@@ -114,6 +114,9 @@ impl Fitted {
             .map_err(|()| vec![stiff(table)])?;
         let (stations, parameters) = by_station(&path.curve);
         let length_m = stations.nodes()[stations.nodes().len() - 1];
+        if !length_m.is_finite() {
+            return Err(vec![stiff(table)]);
+        }
         let roll =
             attitude(table, &knots, &weights, mean_error).map_err(|()| vec![stiff(table)])?;
         let report = FitReport::new(table, &path.summary(), roll.error_rad);

@@ -17,6 +17,7 @@ pub(super) fn of(plan: &Plan<'_>, cases: &[Case]) -> Vec<String> {
          No band holds what masses, friction, air or the build of the ride leave open: vary them in scenarios."
             .to_owned(),
     ];
+    cautions.extend(narrowed(plan));
     cautions.extend(illustrative(plan));
     cautions.extend(rules(plan).filter_map(|(envelope, rule)| scaled(envelope, rule)));
     for design in &plan.variants {
@@ -37,6 +38,35 @@ pub(super) fn of(plan: &Plan<'_>, cases: &[Case]) -> Vec<String> {
         }
     }
     cautions
+}
+
+/// Part of a study must not pass for all of it.
+fn narrowed(plan: &Plan<'_>) -> Option<String> {
+    let counted = |taken: usize, all: usize, what: &str| {
+        (taken < all).then(|| format!("{taken} of the {all} {what}"))
+    };
+    let taken = plan.variants.iter().flat_map(|design| &design.seats);
+    let all = plan.variants.iter().flat_map(|d| &d.variant.train.cars);
+    let parts = [
+        counted(plan.variants.len(), plan.study.variants.len(), "variants"),
+        counted(
+            plan.scenarios.len(),
+            plan.study.operation.scenarios.len(),
+            "scenarios",
+        ),
+        counted(
+            taken.map(Vec::len).sum(),
+            all.map(|car| car.seats.len()).sum(),
+            "seats",
+        ),
+    ];
+    let parts = parts.into_iter().flatten().collect::<Vec<_>>();
+    (!parts.is_empty()).then(|| {
+        format!(
+            "Only a part of the study was taken, {}: the outcome says nothing of the rest.",
+            parts.join(", ")
+        )
+    })
 }
 
 fn illustrative(plan: &Plan<'_>) -> Vec<String> {

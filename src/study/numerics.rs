@@ -1,4 +1,5 @@
-//! How far the numerics may be off, from a second, coarser solution of the same case.
+//! How far the numerics may be off: from a second, coarser solution of the same case, and from a closer
+//! look between samples that lie far apart.
 
 use super::plan::{CaseId, Design, Plan};
 use crate::input::GravityTerm;
@@ -14,6 +15,9 @@ const CLOSE_LOOK_G: f64 = 1e-4;
 
 /// A load that changes over two samples by so many times what it does over the two on either side jumps.
 const JUMP: f64 = 3.0;
+
+/// Samples closer than this leave no load between them unseen, Hz.
+const CLOSE_RATE_HZ: f64 = 500.0;
 
 /// Steps of the coarser solution over those of the finer.
 pub(super) const COARSER: f64 = 2.0;
@@ -57,7 +61,48 @@ pub(super) fn estimate(
     }
     let stride = (samples.rate_hz / COMPARED_HZ).round().max(1.0) as usize;
     let coarse = coarse.samples(samples.rate_hz / stride as f64);
-    Ok(compared(plan, design, samples, &coarse, stride))
+    let solved = compared(plan, design, samples, &coarse, stride);
+    let sampled = between_samples(plan, design, history, samples);
+    Ok(Numerics {
+        load_g: solved.load_g + sampled.load_g,
+        speed_m_s: solved.speed_m_s + sampled.speed_m_s,
+    })
+}
+
+/// How far loads and the speed go between two samples beyond both of them.
+///
+/// At [`CLOSE_RATE_HZ`] and above that is nothing that tells.
+fn between_samples(
+    plan: &Plan<'_>,
+    design: &Design<'_>,
+    history: &History<'_>,
+    samples: &Samples,
+) -> Numerics {
+    let parts = (CLOSE_RATE_HZ / samples.rate_hz).ceil() as usize;
+    let mut beyond = Numerics::default();
+    if parts <= 1 {
+        return beyond;
+    }
+    let close = history.samples(samples.rate_hz * parts as f64);
+    beyond.speed_m_s = overshoot(&close.speed_m_s, parts);
+    for car in 0..design.seats.len() {
+        let loads = loads_of(plan, design, &design.poses, car, &close);
+        let axes = loads.seats.iter().flatten();
+        beyond.load_g = axes
+            .map(|axis_g| overshoot(axis_g, parts))
+            .fold(beyond.load_g, f64::max);
+    }
+    beyond
+}
+
+/// The furthest that a series goes beyond those of its values, one in `parts`, between which it lies.
+fn overshoot(values: &[f64], parts: usize) -> f64 {
+    let beyond = |(i, value): (usize, &f64)| {
+        let before = values[i - i % parts];
+        let after = *values.get(i - i % parts + parts).unwrap_or(&before);
+        (value - before.max(after)).max(before.min(after) - value)
+    };
+    values.iter().enumerate().map(beyond).fold(0.0, f64::max)
 }
 
 fn compared(

@@ -111,8 +111,13 @@ impl Poses {
             chain.leading_m(last_axle, 0.0)?
         };
         let last_m = spine.length_m();
-        // A train as long as a closed track would bite its tail.
-        let (train_m, track_m) = (layout.length_m(), last_m);
+        let track_m = last_m;
+        // On a closed track the axles span more of the spine than they do straight; a train as long
+        // as that would bite its tail.
+        let train_m = match spine.is_closed() && layout.length_m() < track_m {
+            true => last_m - chain.stations_m(last_m)?[last_axle],
+            false => layout.length_m(),
+        };
         if train_m >= track_m {
             return Err(PoseError::TrainTooLong { train_m, track_m });
         }

@@ -5,6 +5,7 @@ mod close_call;
 mod export;
 mod faults;
 mod fixture;
+mod hostile;
 mod new;
 mod rules;
 mod speed_rules;
