@@ -146,7 +146,7 @@ fn each_variant_has_its_own_outcome_and_table() {
     let study = Fixture::valley();
     study.write(
         "eased.track.yaml",
-        "crestfall: 1\ntrack: Eased\nstart: {z: 30 m, heading: 90 deg}\nelements:\n  - {name: run, length: 70 m}\n",
+        "crestfall: 1\ntrack: Eased\nstart: {z: 30 m, heading: 90 deg, grade: -5 deg}\nelements:\n  - {name: run, length: 70 m}\n",
     );
     study.replace(
         "ride.study.yaml",

@@ -2,7 +2,7 @@
 
 use super::entry::{Entry, variants};
 use super::layout::{glued, section};
-use crate::envelope::Outcome;
+use crate::envelope::{Outcome, Spell};
 use crate::report::number::{Units, seconds, utilisation_with_band};
 use crate::study::Assessment;
 
@@ -33,7 +33,7 @@ pub(super) fn worst_of_each_rule(
 
 fn worst_row(worst: &Entry<'_>, units: Units) -> Vec<String> {
     let judgement = &worst.rule.judgement;
-    let spell = judgement.governing;
+    let spell = counted_spell(worst);
     let held = spell.filter(|_| worst.is_felt());
     let used = judgement.utilisation;
     vec![
@@ -43,14 +43,23 @@ fn worst_row(worst: &Entry<'_>, units: Units) -> Vec<String> {
         shown(spell.map(|s| units.measured(judgement.unit, s.load))),
         shown(spell.map(|s| units.measured(judgement.unit, s.limit))),
         shown(held.map(|s| seconds(s.duration_s))),
-        shown(worst.rule.station_m.map(|m| units.station(m))),
+        shown(spell.and(worst.rule.station_m).map(|m| units.station(m))),
         place(worst),
     ]
 }
 
+/// A utilisation below this is printed as 0.
+const PRINTED_AS_NOTHING: f64 = 5e-4;
+
+/// What governs a rule, unless it is a trace of a load that would be printed as 0.
+fn counted_spell(worst: &Entry<'_>) -> Option<Spell> {
+    let spell = worst.rule.judgement.governing;
+    spell.filter(|spell| spell.utilisation >= PRINTED_AS_NOTHING)
+}
+
 /// Who feels it and when; nobody where no load counts.
 fn place(worst: &Entry<'_>) -> String {
-    match worst.rule.judgement.governing {
+    match counted_spell(worst) {
         Some(_) => format!("{}, {}", worst.seat_name(), worst.case.scenario),
         None => "-".to_owned(),
     }
