@@ -11,6 +11,20 @@
 //! 7. [`study`] does so for all variants, scenarios and seats;
 //! 8. [`report`] writes it down.
 //!
+//! ```
+//! use crestfall::study::{Selection, assess};
+//!
+//! let path = std::path::Path::new("demo-tracks/saltglass/saltglass.study.yaml");
+//! let study = crestfall::input::read_study(path).expect("the demo is well formed");
+//! let selection = Selection {
+//!     variants: vec!["eased".into()],
+//!     scenarios: vec!["warm-full".into()],
+//!     seats: vec!["1-front-left".into()],
+//! };
+//! let assessment = assess(&study, &selection, &|_, _| ()).expect("the files fit together");
+//! assert_eq!(assessment.outcome.to_string(), "inside");
+//! ```
+//!
 //! | what | convention |
 //! | --- | --- |
 //! | world axes | x east, y north, z up |

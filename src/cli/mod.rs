@@ -9,6 +9,7 @@ mod new;
 mod output;
 mod progress;
 mod schema;
+mod spine;
 mod whole_file;
 
 use std::path::PathBuf;
@@ -45,6 +46,7 @@ enum Command {
     Check(check::Arguments),
     /// Write the time histories of every case and seat as CSV files
     Export(export::Arguments),
+    Spine(spine::Arguments),
     /// Write a small study to start from
     New(new::Arguments),
     /// Print the JSON Schema of a kind of file, for editors
@@ -113,6 +115,7 @@ pub(crate) fn run() -> Status {
     let result = match &Arguments::parse().command {
         Command::Check(arguments) => check::run(arguments),
         Command::Export(arguments) => export::run(arguments),
+        Command::Spine(arguments) => spine::run(arguments),
         Command::New(arguments) => new::run(arguments),
         Command::Schema(arguments) => schema::run(arguments),
         Command::Completions(arguments) => completions::run(arguments),

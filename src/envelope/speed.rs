@@ -43,10 +43,10 @@ pub(super) fn assess(
     for &stretch in stretches {
         let nodes = nodes(record, stretch);
         if let Some(max_m_s) = bounds.max_m_s {
-            tally.weigh_all(&nodes, &Bound::Most(factor * max_m_s));
+            tally.weigh_all(&nodes, &Bound::Most(factor * max_m_s), record.numerical_m_s);
         }
         if let Some(min_m_s) = bounds.min_m_s {
-            tally.weigh_all(&nodes, &Bound::Least(min_m_s));
+            tally.weigh_all(&nodes, &Bound::Least(min_m_s), record.numerical_m_s);
         }
         if let Some(stop) = bounds.stop {
             let stops = stops_in(record, stretch);
@@ -171,21 +171,24 @@ struct Tally {
 }
 
 impl Tally {
-    /// Weighs a pass against a bound: its worst moment, and every spell beyond.
-    fn weigh_all(&mut self, nodes: &[Node], bound: &Bound) {
+    /// Weighs a pass against a bound: its worst moment, and every spell that is beyond it or nearer
+    /// than `error_m_s`.
+    fn weigh_all(&mut self, nodes: &[Node], bound: &Bound, error_m_s: f64) {
         self.measured = true;
         let mut beyond: Option<(f64, Node)> = None;
         for (index, node) in nodes.iter().enumerate() {
             self.govern(bound.spell(node, node.time_s, node.time_s));
             let before = index.checked_sub(1).map(|before| nodes[before]);
-            if bound.beyond_m_s(node.speed_m_s) > 0.0 {
-                let from_s = before.map_or(node.time_s, |before| crossing_s(bound, &before, node));
+            if bound.beyond_m_s(node.speed_m_s) > -error_m_s {
+                let from_s = before.map_or(node.time_s, |before| {
+                    crossing_s(bound, error_m_s, &before, node)
+                });
                 let (_, worst) = beyond.get_or_insert((from_s, *node));
                 if bound.utilisation(node.speed_m_s) > bound.utilisation(worst.speed_m_s) {
                     *worst = *node;
                 }
             } else if let (Some((from_s, worst)), Some(before)) = (beyond.take(), before) {
-                self.find(bound.spell(&worst, from_s, crossing_s(bound, node, &before)));
+                self.find(bound.spell(&worst, from_s, crossing_s(bound, error_m_s, node, &before)));
             }
         }
         if let (Some((from_s, worst)), Some(last)) = (beyond, nodes.last()) {
@@ -260,12 +263,12 @@ impl Tally {
     }
 }
 
-/// When the speed crosses a bound between two moments, of which the second is beyond it; the time of
-/// the second where both are.
-fn crossing_s(bound: &Bound, within: &Node, beyond: &Node) -> f64 {
+/// When the speed comes within `error_m_s` of a bound between two moments, of which the second is
+/// nearer or beyond; the time of the second where both are.
+fn crossing_s(bound: &Bound, error_m_s: f64, within: &Node, beyond: &Node) -> f64 {
     let (a, b) = (
-        bound.beyond_m_s(within.speed_m_s),
-        bound.beyond_m_s(beyond.speed_m_s),
+        bound.beyond_m_s(within.speed_m_s) + error_m_s,
+        bound.beyond_m_s(beyond.speed_m_s) + error_m_s,
     );
     if a >= 0.0 {
         return if a > 0.0 {

@@ -5,6 +5,7 @@
 //! nothing of geometry or physics.
 
 mod access;
+mod argument;
 mod decode;
 mod dimension;
 mod document;
@@ -36,6 +37,7 @@ mod schema_tests;
 #[cfg(test)]
 mod tests;
 
+pub use argument::speed_m_s;
 pub use envelope::{
     Axis, Between, Demand, Document, Envelope, Filter, GravityTerm, NameAt, Rule, RuleKind, Scale,
     Sign, SpeedBounds, StationRange, Status, Stop, Sustained, Where,
@@ -48,7 +50,7 @@ pub use read::{read_envelope, read_study, read_track};
 pub use schema::schema;
 pub use study::{InputFile, Study, Variant};
 pub use track::{Change, Ease, Element, ElementTrack, Extent, Landmark, Start, Track, TrackSource};
-pub use train::{Car, Inertia, Seat, Train};
+pub use train::{Car, Inertia, SHARED_AXLE_M, Seat, Train};
 
 /// The kinds of YAML files.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]

@@ -72,6 +72,10 @@ pub(super) fn read(
     let read = read.filter(|_| whole)?;
     let fit = stated_fit(&request, &read, found)?;
     let mut table = PointTable::new(read.columns, request.closed, fit, request.place);
+    let left_out = request.except.iter().map(|(row, _)| *row as usize);
+    table.left_out = left_out.collect();
+    table.left_out.sort_unstable();
+    table.left_out.dedup();
     table.errors_m = read.errors_m;
     table.grids = read.grids;
     Some(table.with_rows(Arc::clone(&source), read.rows))

@@ -20,6 +20,8 @@ pub struct PointTable {
     pub errors_m: Option<Vec<f64>>,
     /// The decimal grids on which the table's numbers sit.
     pub grids: Grids,
+    /// Rows of the table that are left out, from 1, increasing.
+    pub left_out: Vec<usize>,
     /// The `points` entry of the track file.
     pub place: Place,
     /// Bytes and number (from 1, excepted rows counted) of each row.
@@ -61,6 +63,7 @@ impl PointTable {
             fit,
             errors_m,
             grids,
+            left_out: Vec::new(),
             place,
             rows,
             source,

@@ -4,6 +4,9 @@ use nalgebra::Vector3;
 
 use crate::diagnostic::Place;
 
+/// Axles of neighbouring cars closer than this are one axle, m.
+pub const SHARED_AXLE_M: f64 = 1e-3;
+
 /// One train, from one train file.
 #[derive(Clone, Debug)]
 pub struct Train {

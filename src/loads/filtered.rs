@@ -19,6 +19,33 @@ pub struct Filtered {
     pub margin_g: Option<AxesG>,
 }
 
+/// The same with the last load held for as long as the filter's delay, so that the end of the record
+/// is seen in full.
+pub fn filtered_to_the_end(axes_g: &AxesG, rate_hz: f64, filter: Filter) -> Filtered {
+    let delay_s = match filter {
+        Filter::None => 0.0,
+        Filter::Butterworth { poles, corner_hz } => {
+            Butterworth::new(poles, corner_hz, rate_hz).delay_s()
+        }
+    };
+    filtered(
+        &held_on(axes_g, (delay_s * rate_hz).ceil() as usize),
+        rate_hz,
+        filter,
+    )
+}
+
+/// Three axes whose last values go on for `count` samples.
+pub fn held_on(axes: &AxesG, count: usize) -> AxesG {
+    axes.each_ref().map(|axis| {
+        let last = axis.last().copied();
+        axis.iter()
+            .copied()
+            .chain(last.into_iter().flat_map(|v| std::iter::repeat_n(v, count)))
+            .collect()
+    })
+}
+
 /// How long, s, until a filter has lost what it was started with.
 pub fn memory_s(filter: Filter, rate_hz: f64) -> f64 {
     match filter {

@@ -9,5 +9,5 @@ mod filtered;
 mod margin;
 
 pub use felt::{AxesG, CarLoads, car_from_rider, car_loads, seat_positions};
-pub use filtered::{Filtered, filtered, memory_s};
+pub use filtered::{Filtered, filtered, filtered_to_the_end, held_on, memory_s};
 pub use margin::{held_back, seat_margins};

@@ -3,6 +3,7 @@
 use nalgebra::{Matrix3, Vector3};
 
 use crate::input::{Car, Riders, Train};
+use crate::numerics::jet::VectorJet;
 use crate::train::{CarPose, occupied};
 
 /// A car with its riders. Each empty car is a point mass at its mass centre with its inertia about
@@ -26,6 +27,11 @@ pub(super) struct Inertial {
     pub(super) mass_kg: f64,
     /// ½ M′, kg/m.
     pub(super) half_slope_kg_m: f64,
+}
+
+/// Σ wᵢ bᵢ′ over the axes of a car.
+fn weighted_rates(w: Vector3<f64>, axes: &[VectorJet; 3]) -> Vector3<f64> {
+    axes[0].d1 * w.x + axes[1].d1 * w.y + axes[2].d1 * w.z
 }
 
 /// All cars of a train with the riders of a scenario.
@@ -72,12 +78,10 @@ impl CarBody {
         let (c1, c2) = (centre(axes.map(|a| a.d1)), centre(axes.map(|a| a.d2)));
         let mut mass_kg = self.mass_kg * (o1.dot(&o1) + 2.0 * o1.dot(&c1));
         let mut half_slope = self.mass_kg * (o1.dot(&o2) + o1.dot(&c2) + c1.dot(&o2));
-        for (i, a) in axes.iter().enumerate() {
-            for (j, b) in axes.iter().enumerate() {
-                let second = self.second_kg_m2[(i, j)];
-                mass_kg += second * a.d1.dot(&b.d1);
-                half_slope += second * a.d1.dot(&b.d2);
-            }
+        for (j, b) in axes.iter().enumerate() {
+            let moment = weighted_rates(self.second_kg_m2.column(j).into_owned(), &axes);
+            mass_kg += moment.dot(&b.d1);
+            half_slope += moment.dot(&b.d2);
         }
         let spin = self.spin(pose);
         Inertial {

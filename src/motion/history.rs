@@ -94,11 +94,14 @@ impl History<'_> {
         for segment in &self.segments {
             let time_s = |i: usize| i as f64 / rate_hz;
             while time_s(index) < segment.to_s {
-                if let Some(state) = segment.state_at(&self.model, time_s(index)) {
-                    samples.train_station_m.push(state.station_m);
-                    samples.speed_m_s.push(state.speed_m_s);
-                    samples.acceleration_m_s2.push(state.acceleration_m_s2);
-                }
+                // A state that is not there leaves a gap that shows, not a record that is shorter.
+                let state = segment.state_at(&self.model, time_s(index));
+                let part = |of: fn(&State) -> f64| state.as_ref().map_or(f64::NAN, of);
+                samples.train_station_m.push(part(|s| s.station_m));
+                samples.speed_m_s.push(part(|s| s.speed_m_s));
+                samples
+                    .acceleration_m_s2
+                    .push(part(|s| s.acceleration_m_s2));
                 index += 1;
             }
         }

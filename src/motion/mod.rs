@@ -7,9 +7,11 @@
 mod air;
 mod bodies;
 mod equation;
+mod event;
 mod history;
 mod ledger;
 mod run;
+mod stretch;
 mod zone;
 
 pub use air::{density_kg_m3, wind_m_s};

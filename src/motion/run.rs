@@ -3,20 +3,16 @@
 //! Dormand–Prince 5(4) with dense output (Hairer, Nørsett & Wanner, *Solving Ordinary
 //! Differential Equations I*, sec. II.5–6), restarted wherever the right-hand side switches.
 
-use std::cell::RefCell;
-
 use nalgebra::Vector2;
-use ode_solvers::continuous_output_model::ContinuousOutputModel;
-use ode_solvers::dopri5::Dopri5;
-use ode_solvers::{OutputType, System};
 
 use super::equation::{Law, Model};
+use super::event::{EVENT_TIME_S, Event, Gaps};
 use super::history::{History, Segment};
 use super::ledger::Books;
+use super::stretch::Stretch;
 use super::zone::{Mode, Window, windows_near};
 use super::{MotionError, Reversal, Ride, RunEnd};
 use crate::input::{Device, Goal};
-use crate::numerics::root::bracketed;
 
 /// Numbers that steer the integration.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -35,9 +31,6 @@ impl Default for Settings {
         }
     }
 }
-
-/// Times of events are located to this, s.
-const EVENT_TIME_S: f64 = 1e-12;
 
 /// Stations closer than this are one, m.
 const SAME_STATION_M: f64 = 1e-9;
@@ -63,21 +56,6 @@ pub fn simulate<'a>(ride: &Ride<'a>) -> Result<History<'a>, MotionError> {
 /// As [`simulate`].
 pub fn simulate_with<'a>(ride: &Ride<'a>, settings: Settings) -> Result<History<'a>, MotionError> {
     Runner::new(*ride, settings).run()
-}
-
-/// What ends a stretch of time in which nothing switches.
-#[derive(Clone, Copy, Debug, PartialEq)]
-enum Event {
-    /// The leading axle reaches the next edge or stop.
-    Edge,
-    /// The train comes to rest.
-    Standstill,
-    /// A zone (index in the law's windows) meets the speed at which it does something else.
-    Speed(usize),
-    /// The zones that keep a speed can do so no longer.
-    Beyond,
-    /// The time is up.
-    TimeLimit,
 }
 
 /// The state of a run between events.
@@ -161,71 +139,32 @@ impl<'a> Runner<'a> {
             law: &self.law,
             edge_m: self.edge_m,
         };
-        let steps = RefCell::new(vec![self.time_s]);
-        let system = Rolling {
-            gaps: &gaps,
-            steps: &steps,
-        };
-        let start = Vector2::new(self.q, self.v);
-        let mut states = ContinuousOutputModel::default();
-        let Settings {
-            tolerance,
-            longest_step_s,
-        } = self.settings;
-        let mut stepper = Dopri5::from_param(
-            system,
-            self.time_s,
-            limit_s,
-            0.0,
-            start,
-            1e-3 * tolerance,
-            tolerance,
-            0.9,
-            0.04,
-            0.2,
-            10.0,
-            longest_step_s,
-            0.0,
-            u32::MAX,
-            u32::MAX,
-            OutputType::Continuous,
+        let stretch = Stretch::integrated(
+            &gaps,
+            (self.time_s, limit_s),
+            Vector2::new(self.q, self.v),
+            self.settings,
         );
-        let outcome = stepper.integrate_with_continuous_output_model(&mut states);
-        drop(stepper);
-        let mut steps = steps.into_inner();
-        let state = |t: f64| -> (f64, f64) {
-            states
-                .evaluate(t)
-                .map_or((f64::NAN, f64::NAN), |y| (y.x, y.y))
+        let (event, to_s) = match (
+            gaps.first(&stretch.steps, |t| stretch.state(t)),
+            &stretch.fault,
+        ) {
+            (Some(found), _) => found,
+            (None, None) => (Event::TimeLimit, limit_s),
+            (None, Some(reason)) => return Err(self.given_up(reason.clone())),
         };
-        let (event, to_s) = match (&outcome, gaps.first(&steps, state)) {
-            (_, Some(found)) => found,
-            (Ok(_), None) => (Event::TimeLimit, limit_s),
-            (Err(error), None) => return Err(self.given_up(error.to_string())),
-        };
-        let (q, v) = if to_s > self.time_s {
-            state(to_s)
-        } else {
-            (self.q, self.v)
+        let passed_s = to_s - self.time_s;
+        let (q, v) = match passed_s > 0.0 {
+            true => stretch.state(to_s),
+            false => (self.q, self.v),
         };
         if !(q.is_finite() && v.is_finite()) {
             return Err(self.given_up("the state is not a number".into()));
         }
-        if to_s > self.time_s {
-            steps.retain(|&t| t < to_s);
-            steps.push(to_s);
-            for ends in steps.windows(2) {
-                books.add_step(&self.model, &self.law, (ends[0], ends[1]), state);
-            }
-            let law = self.law.clone();
-            self.segments.push(Segment {
-                from_s: self.time_s,
-                to_s,
-                law,
-                states,
-            });
+        if passed_s > 0.0 {
+            self.record(stretch, to_s, books);
         }
-        self.idle = if to_s - self.time_s > EVENT_TIME_S {
+        self.idle = if passed_s > EVENT_TIME_S {
             0
         } else {
             self.idle + 1
@@ -235,6 +174,23 @@ impl<'a> Runner<'a> {
         }
         (self.time_s, self.q, self.v) = (to_s, q, v);
         Ok(event)
+    }
+
+    /// Keeps a stretch up to a time, and books its works.
+    fn record(&mut self, stretch: Stretch, to_s: f64, books: &mut Books) {
+        let before = stretch.steps.iter().copied().filter(|&t| t < to_s);
+        let steps = before.chain([to_s]).collect::<Vec<_>>();
+        for ends in steps.windows(2) {
+            books.add_step(&self.model, &self.law, (ends[0], ends[1]), |t| {
+                stretch.state(t)
+            });
+        }
+        self.segments.push(Segment {
+            from_s: self.time_s,
+            to_s,
+            law: self.law.clone(),
+            states: stretch.states,
+        });
     }
 
     /// What an event changes; how the run ended, if it did.
@@ -458,117 +414,11 @@ fn nearest_edge_m(windows: &[Window], q: f64, direction: f64) -> Option<f64> {
 
 impl Law {
     /// How far the zones that keep a speed may miss the force needed, N.
-    fn slack_n(&self, q: f64) -> f64 {
+    pub(super) fn slack_n(&self, q: f64) -> f64 {
         let keeping = self.windows.iter().filter(|w| w.mode == Mode::Keeping);
         let widths = keeping
             .map(|w| w.keeping_range_n(q))
             .map(|(low, high)| high - low);
         KEEPING_SLACK * widths.sum::<f64>()
-    }
-}
-
-/// How far each event is off: positive before it, negative after it.
-struct Gaps<'a> {
-    model: &'a Model<'a>,
-    law: &'a Law,
-    edge_m: f64,
-}
-
-impl Gaps<'_> {
-    /// The events that can end this stretch of time.
-    fn events(&self) -> Vec<Event> {
-        let mut events = vec![Event::Edge, Event::Standstill];
-        for (index, window) in self.law.windows.iter().enumerate() {
-            let clamp_open =
-                matches!(window.device, Device::Clamp { .. }) && window.mode == Mode::Past;
-            if window.turning_speed_m_s().is_some() && window.mode != Mode::Keeping && !clamp_open {
-                events.push(Event::Speed(index));
-            }
-        }
-        if self.law.keeps_speed() {
-            events.push(Event::Beyond);
-        }
-        events
-    }
-
-    fn gap(&self, event: Event, q: f64, v: f64) -> f64 {
-        match event {
-            Event::Edge => (self.edge_m - q) * self.law.direction,
-            Event::Standstill => v * self.law.direction,
-            Event::Speed(index) => self.speed_gap(&self.law.windows[index], v),
-            Event::Beyond => {
-                let beyond_n = self.model.terms(q, v).beyond_keeping_n(q, v, self.law);
-                self.law.slack_n(q) - beyond_n.abs()
-            }
-            Event::TimeLimit => f64::INFINITY,
-        }
-    }
-
-    fn speed_gap(&self, window: &Window, v: f64) -> f64 {
-        let turning = window.turning_speed_m_s().unwrap_or(f64::INFINITY);
-        match (window.device, window.mode) {
-            (Device::Clamp { .. }, _) => v.abs() - turning,
-            (_, Mode::Past) => v - turning,
-            _ => turning - v,
-        }
-    }
-
-    /// Whether any event has happened at a state.
-    fn any(&self, q: f64, v: f64) -> bool {
-        self.events()
-            .into_iter()
-            .any(|event| self.gap(event, q, v) < 0.0)
-    }
-
-    /// The first event within the last step, with its time.
-    fn first(&self, steps: &[f64], state: impl Fn(f64) -> (f64, f64)) -> Option<(Event, f64)> {
-        let &[.., from_s, to_s] = steps else {
-            return None;
-        };
-        let gap_at = |event: Event, t: f64| {
-            let (q, v) = state(t);
-            self.gap(event, q, v)
-        };
-        let time_of = |event: Event| {
-            if gap_at(event, from_s) < 0.0 {
-                from_s
-            } else {
-                bracketed(from_s, to_s, EVENT_TIME_S, |t| gap_at(event, t))
-            }
-        };
-        let happened = self
-            .events()
-            .into_iter()
-            .filter(|&event| gap_at(event, to_s) < 0.0);
-        happened
-            .map(|event| (event, time_of(event)))
-            .min_by(|a, b| a.1.total_cmp(&b.1))
-    }
-}
-
-/// The right-hand side for the integrator, which notes its steps and stops past an event.
-struct Rolling<'a> {
-    gaps: &'a Gaps<'a>,
-    steps: &'a RefCell<Vec<f64>>,
-}
-
-impl System<f64, Vector2<f64>> for Rolling<'_> {
-    fn system(&self, _t: f64, y: &Vector2<f64>, dy: &mut Vector2<f64>) {
-        let (q, v) = (y.x, y.y);
-        dy.x = v;
-        dy.y = self
-            .gaps
-            .model
-            .terms(q, v)
-            .acceleration_m_s2(q, v, self.gaps.law);
-    }
-
-    fn solout(&mut self, t: f64, y: &Vector2<f64>, _dy: &Vector2<f64>) -> bool {
-        let mut steps = self.steps.borrow_mut();
-        let moved = steps.last().is_none_or(|&last| t > last);
-        if moved {
-            steps.push(t);
-        }
-        moved && self.gaps.any(y.x, y.y)
     }
 }

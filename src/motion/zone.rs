@@ -137,7 +137,7 @@ impl Window {
     /// Force with which a clamp holds a train at rest, N.
     pub(super) fn grip_n(&self, q: f64) -> f64 {
         match (self.device, self.mode) {
-            (Device::Clamp { force_n, .. }, Mode::Working) => force_n * self.share(q),
+            (Device::Clamp { force_n, .. }, Mode::Working) => force_n * self.share(q).max(0.0),
             _ => 0.0,
         }
     }

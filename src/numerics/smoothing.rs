@@ -232,3 +232,54 @@ fn quadratic(matrix: &SymmetricBand, first: usize, b: &[f64; HALF + 1]) -> f64 {
     }
     sum
 }
+
+#[cfg(test)]
+#[allow(clippy::unwrap_used)]
+mod tests {
+    use super::*;
+
+    /// Points 0.3 to 0.7 apart.
+    fn uneven(count: usize) -> Vec<f64> {
+        let at = |i: usize| 0.5 * i as f64 + 0.1 * (1.7 * i as f64).sin();
+        (0..count).map(at).collect()
+    }
+
+    /// Largest distance of fitted values from others.
+    fn apart(smoothed: &Smoothed<1>, values: &[[f64; 1]]) -> f64 {
+        let pairs = smoothed.fitted.iter().zip(values);
+        pairs.fold(0.0, |most, (a, b)| (a[0] - b[0]).abs().max(most))
+    }
+
+    /// A parabola has no third derivative: it passes unchanged whatever λ is. With much larger λ the equations lose
+    /// digits, as normal equations do.
+    #[test]
+    fn exact_parabolas_pass_at_any_lambda() {
+        for n in [60, 2000, 20_000] {
+            let parameters = uneven(n);
+            let smoother = Smoother::new(&parameters, &vec![1.0; n]);
+            let end = parameters[n - 1];
+            let values = parameters.iter().map(|x| [(x / end).powi(2)]);
+            let values = values.collect::<Vec<_>>();
+            for (ln, most) in [(-20.0, 1e-13), (0.0, 1e-12), (8.0, 1e-9), (16.0, 1e-6)] {
+                let lambda = smoother.balanced() * f64::exp(ln);
+                let found = smoother.smoothed(lambda, &values).unwrap();
+                let apart = apart(&found, &values);
+                assert!(apart < most, "{n} points, ln {ln}: {apart:e}");
+            }
+        }
+    }
+
+    /// The limits of λ: interpolation, where every point is its own, and a parabola, which has three parameters.
+    #[test]
+    fn exact_freedom_at_either_end() {
+        let parameters = uneven(60);
+        let smoother = Smoother::new(&parameters, &[1.0; 60]);
+        let values = parameters.iter().map(|x| [x.sin()]).collect::<Vec<_>>();
+        let freedom = |ln: f64| {
+            let found = smoother.smoothed(smoother.balanced() * ln.exp(), &values);
+            found.unwrap().leverages.iter().sum::<f64>()
+        };
+        assert!((freedom(-20.0) - 60.0).abs() < 1e-5);
+        assert!((freedom(28.0) - 3.0).abs() < 1e-2);
+    }
+}

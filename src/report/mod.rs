@@ -2,11 +2,13 @@
 //!
 //! Writers take results and give text or write to what they are handed; they open no file and know no terminal.
 
+mod audit;
 mod csv;
 mod json;
 mod number;
 mod text;
 
+pub use audit::{spine_json, spine_text, write_spine};
 pub use csv::write_record;
 pub use json::check_json;
 pub use number::Units;

@@ -148,6 +148,110 @@ impl Units {
     }
 }
 
+/// A factor or a count of deviations.
+pub(super) fn times(value: f64) -> String {
+    significant(value, 2)
+}
+
+/// A part of a whole.
+pub(super) fn percent(part: f64) -> String {
+    format!("{:.0}%", 100.0 * part)
+}
+
+/// Loads below this are as good as none.
+const LEAST_NOISE_G: f64 = 0.001;
+
+/// A load without its sign, such as an error of one.
+pub(super) fn noise(value_g: f64) -> String {
+    if value_g < LEAST_NOISE_G {
+        return format!("less than {LEAST_NOISE_G} g");
+    }
+    format!("{} g", significant(value_g, 2))
+}
+
+/// An angle.
+pub(super) fn degrees(value_rad: f64) -> String {
+    format!("{:.1} deg", clean(value_rad.to_degrees(), 10.0))
+}
+
+/// An angle that may be far below a degree.
+pub(super) fn fine_degrees(value_rad: f64) -> String {
+    format!("{} deg", significant(value_rad.to_degrees(), 2))
+}
+
+impl Units {
+    /// A height or a radius.
+    pub(super) fn length(self, value_m: f64) -> String {
+        match self {
+            Self::Si => format!("{:.2} m", clean(value_m, 100.0)),
+            Self::Us => format!("{:.2} ft", clean(value_m / FOOT_M, 100.0)),
+        }
+    }
+
+    /// A length that may be far below a metre, to two digits.
+    pub(super) fn fine(self, value_m: f64) -> String {
+        match self {
+            Self::Si if value_m < 1e-7 => format!("{value_m:.1e} m"),
+            Self::Us if value_m < 1e-7 => format!("{:.1e} ft", value_m / FOOT_M),
+            Self::Si if value_m < 0.1 => format!("{} mm", significant(1e3 * value_m, 2)),
+            Self::Si => format!("{} m", significant(value_m, 2)),
+            Self::Us if value_m < 0.1 => format!("{} in", significant(12.0 * value_m / FOOT_M, 2)),
+            Self::Us => format!("{} ft", significant(value_m / FOOT_M, 2)),
+        }
+    }
+
+    /// A rotation over a length.
+    pub(super) fn rate(self, value_rad_m: f64) -> String {
+        match self {
+            Self::Si => format!("{:.2} deg/m", clean(value_rad_m.to_degrees(), 100.0)),
+            Self::Us => format!(
+                "{:.2} deg/ft",
+                clean(value_rad_m.to_degrees() * FOOT_M, 100.0)
+            ),
+        }
+    }
+
+    /// A curvature or a jump of one.
+    pub(super) fn curvature(self, value_1_m: f64) -> String {
+        match self {
+            Self::Si => format!("{} 1/m", significant(value_1_m, 3)),
+            Self::Us => format!("{} 1/ft", significant(value_1_m * FOOT_M, 3)),
+        }
+    }
+
+    /// How fast a curvature changes.
+    pub(super) fn curvature_rate(self, value_1_m2: f64) -> String {
+        match self {
+            Self::Si => format!("{} 1/m2", significant(value_1_m2, 3)),
+            Self::Us => format!("{} 1/ft2", significant(value_1_m2 * FOOT_M * FOOT_M, 3)),
+        }
+    }
+}
+
+/// A number to at most so many digits, without an exponent or zeros at its end.
+fn significant(value: f64, digits: i32) -> String {
+    if value == 0.0 || !value.is_finite() {
+        return value.to_string();
+    }
+    let exponent = value.abs().log10().floor() as i32;
+    let scale = 10f64.powi(digits - 1 - exponent);
+    let decimals = (digits - 1 - exponent).max(0) as usize;
+    let text = format!("{:.decimals$}", (value * scale).round() / scale);
+    match text.contains('.') {
+        true => text.trim_end_matches('0').trim_end_matches('.').to_owned(),
+        false => text,
+    }
+}
+
+/// Without a sign before nothing.
+fn clean(value: f64, scale: f64) -> f64 {
+    if (value * scale).round() == 0.0 {
+        0.0
+    } else {
+        value
+    }
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;

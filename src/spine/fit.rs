@@ -17,13 +17,14 @@ use crate::numerics::quadrature::integrate;
 use crate::numerics::quintic::{Grid, Quintic};
 
 /// Between neighbouring chords a curve may turn by no more than this: beyond, the points lie too
-/// far apart to say how it runs between them.
+/// far apart to say how it runs between them (our choice: a circle of 2 m radius every metre).
 const LARGEST_TURN_DEG: f64 = 30.0;
 
-/// Steepest grade at which a bank, measured from the level frame, still means something.
+/// Steepest grade at which a bank, measured from the level frame, still means something (our choice:
+/// its rate goes with the tangent of the grade, 11 rad/rad here).
 const STEEPEST_WITH_BANK_DEG: f64 = 85.0;
 
-/// Least sine of the angle between a fitted up (or left) vector and the track.
+/// Least sine of the angle between a fitted up (or left) vector and the track (our choice: 12 deg).
 const LEAST_ACROSS: f64 = 0.2;
 
 /// A curve through points with its attitude.
@@ -158,6 +159,27 @@ impl Fitted {
         };
         let (interval, d) = self.stations.locate(s);
         self.parameters.jets(interval, d)[0][0]
+    }
+
+    /// Stations of the points of the centre line, m.
+    pub(super) fn stations_of(&self, centre: &[Vector3<f64>]) -> Vec<f64> {
+        let parameters = chords(centre);
+        let stretched = self.length_m / self.path.knots()[self.path.knots().len() - 1];
+        parameters
+            .iter()
+            .map(|&p| {
+                // The parameter is all but the arc length, so that each step squares the error.
+                let mut s = p * stretched;
+                for _ in 0..20 {
+                    let off = p - self.parameter_at(s.min(self.length_m * (1.0 - 1e-12)));
+                    s = (s + off).clamp(0.0, self.length_m);
+                    if off.abs() < 1e-10 {
+                        break;
+                    }
+                }
+                s
+            })
+            .collect()
     }
 
     pub(super) fn length_m(&self) -> f64 {
@@ -335,7 +357,7 @@ impl Knots {
 }
 
 /// The centre line of any column set.
-fn centre_line(columns: &Columns) -> Vec<Vector3<f64>> {
+pub(super) fn centre_line(columns: &Columns) -> Vec<Vector3<f64>> {
     match columns {
         Columns::Bank { centre_m, .. } | Columns::Up { centre_m, .. } => centre_m.clone(),
         Columns::Rails { left_m, right_m } => left_m
@@ -477,7 +499,8 @@ fn weights(table: &PointTable) -> (Option<f64>, Vec<f64>) {
 /// that would tell.
 const NO_NOISE_1_M: f64 = 1e-6;
 
-/// An error found by cross-validation up to this many times that of rounding is taken to be rounding.
+/// An error found by cross-validation up to this many times that of rounding is taken to be rounding
+/// (our choice: it is found to a tenth or better, see `tests/physics/noise.rs`).
 const LIKE_ROUNDING: f64 = 1.5;
 
 impl Knots {
@@ -545,16 +568,20 @@ impl Knots {
         }
     }
 
-    /// Whether interpolating points of this error would tell in a curvature.
+    /// Whether interpolating points of this error would tell in a curvature, where they lie closest.
     fn is_noise(&self, deviation: f64) -> bool {
-        let n = self.chord_m.len();
+        let closest = self.chord_m.windows(2).map(|pair| pair[1] - pair[0]);
+        let closest_m = closest.fold(f64::INFINITY, f64::min);
         let noise = Noise::Interpolated {
             deviation,
-            parameters: self.chord_m.clone(),
+            parameters: (0..=CENTRAL).map(|i| i as f64 * closest_m).collect(),
         };
-        noise.half_width(self.chord_m[n / 2], 2) > NO_NOISE_1_M
+        noise.half_width(0.5 * CENTRAL as f64 * closest_m, 2) > NO_NOISE_1_M
     }
 }
+
+/// Intervals of an even table in whose middle the ends do not tell.
+const CENTRAL: usize = 20;
 
 impl<const N: usize> Laid<N> {
     fn smooth(smooth: Smooth<N>, method: FitMethod) -> Self {
@@ -576,6 +603,44 @@ impl<const N: usize> Laid<N> {
             studentised: &self.studentised,
         }
     }
+}
+
+/// Cumulative chords of points, which are the parameters of the curve through them.
+pub(super) fn chords(centre: &[Vector3<f64>]) -> Vec<f64> {
+    Knots::new(centre, false).chord_m
+}
+
+/// What an error of the points leaves open of a curve smoothed to it.
+pub(super) fn path_noise(centre: &[Vector3<f64>], closed: bool, error_m: f64) -> Option<Noise> {
+    let knots = Knots::new(centre, closed);
+    let wanted = Wanted {
+        fit: Fit::Within {
+            error_m,
+            bank_error_rad: None,
+        },
+        stated: Some(error_m),
+        rounding: None,
+        weights: &vec![1.0; centre.len()],
+        across: true,
+    };
+    knots
+        .laid(&components(centre), &wanted)
+        .ok()
+        .map(|laid| laid.noise)
+}
+
+/// Standard deviation of a point of the centre line that cross-validation finds, m.
+pub(super) fn cross_validated_error(table: &PointTable) -> Option<f64> {
+    let centre = centre_line(&table.columns);
+    let knots = Knots::new(&centre, table.closed);
+    let wanted = Wanted {
+        fit: Fit::Auto,
+        stated: None,
+        rounding: None,
+        weights: &vec![1.0; centre.len()],
+        across: true,
+    };
+    knots.laid(&components(&centre), &wanted).ok()?.error
 }
 
 /// The equations of a fit could not be solved.

@@ -3,6 +3,7 @@
 //! A spine gives position r(s), tangent t = r′ and up vector u(s) by station s, its arc length,
 //! from design elements ([`elements`]) or from points ([`fit`]). It knows no train and no time.
 
+mod audit;
 mod ease;
 mod elements;
 mod fit;
@@ -11,6 +12,10 @@ mod point;
 mod report;
 mod smooth;
 
+pub use audit::{
+    Audit, Corners, Ends, Extreme, Extremes, Finding, FindingKind, Floor, Law, NoiseFloor, Points,
+    Range, Remedy, Spacing, WANTED_G, audit, understated_error,
+};
 pub use margin::Margin;
 pub use point::SpinePoint;
 pub use report::{FitMethod, FitReport, Outlier};

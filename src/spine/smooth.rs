@@ -31,7 +31,8 @@ pub(super) struct Smooth<const N: usize> {
     pub(super) spread: Spread,
     /// Standard deviation of a point of weight 1, per coordinate, stated or found.
     pub(super) error: f64,
-    /// Residual of each point (across the curve where asked) over its own standard deviation.
+    /// Residual of each point (across the curve where asked), less the curve's bias near its ends, over
+    /// its own standard deviation.
     pub(super) studentised: Vec<f64>,
     /// Length of each residual.
     pub(super) residuals: Vec<f64>,
@@ -74,6 +75,11 @@ const LEAST_REPEATED: usize = 200;
 /// roughness of the prior, far above that of a track. Measured: see `tests/physics/noise.rs`.
 const PRIOR_KEPT: f64 = 0.6;
 
+/// Least part of a point's variance that its residual is held against. Where points lie far apart the
+/// curve is drawn close to each, and its bias at sharp bends is far above the little noise that is left
+/// in a residual there. More would hide slips: a curve follows a gross one to a tenth of its size.
+const LEAST_LEFT: f64 = 0.25;
+
 /// Why nothing could be fitted.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(super) struct IllConditioned;
@@ -87,27 +93,14 @@ impl<const N: usize> Data<'_, N> {
     /// `error` (the unbiased risk of Craven & Wahba 1979, Mallows' C_L).
     pub(super) fn within(&self, error: f64) -> Result<Smooth<N>, IllConditioned> {
         let trials = Trials::new(self);
-        let risk = |ln: f64| trials.at(ln).map(|trial| trial.risk(error));
-        let least_risk = least(risk)?;
-        let excess = |ln: f64| match trials.at(ln) {
-            Some(trial) => trial.squares - error * error * trial.freedom,
-            // Equations too stiff to solve stand for a curve too smooth.
-            None => f64::MAX,
-        };
-        let ln = if excess(least_risk) >= 0.0 {
-            least_risk
-        } else if excess(HIGHEST) <= 0.0 {
-            HIGHEST
-        } else {
-            bracketed(least_risk, HIGHEST, LAMBDA_TOLERANCE, excess)
-        };
+        let ln = trials.matching(error)?;
         trials.smooth(ln, Some(error))
     }
 
     /// The curve of the least generalized cross-validation score, which finds the error itself.
     pub(super) fn cross_validated(&self) -> Result<Smooth<N>, IllConditioned> {
         let trials = Trials::new(self);
-        let ln = least(|ln| trials.at(ln).and_then(|trial| trial.score()))?;
+        let ln = trials.cross_validated()?;
         trials.smooth(ln, None)
     }
 }
@@ -194,6 +187,31 @@ impl<'a, const N: usize> Trials<'a, N> {
         }
     }
 
+    /// ln λ at which the residuals match an error, or of the least risk where they do so nowhere beyond.
+    fn matching(&self, error: f64) -> Result<f64, IllConditioned> {
+        let least_risk = self.least_risk(error)?;
+        let excess = |ln: f64| match self.at(ln) {
+            Some(trial) => trial.squares - error * error * trial.freedom,
+            // Equations too stiff to solve stand for a curve too smooth.
+            None => f64::MAX,
+        };
+        if excess(least_risk) >= 0.0 {
+            Ok(least_risk)
+        } else if excess(HIGHEST) <= 0.0 {
+            Ok(HIGHEST)
+        } else {
+            Ok(bracketed(least_risk, HIGHEST, LAMBDA_TOLERANCE, excess))
+        }
+    }
+
+    fn least_risk(&self, error: f64) -> Result<f64, IllConditioned> {
+        least(|ln| self.at(ln).map(|trial| trial.risk(error)))
+    }
+
+    fn cross_validated(&self) -> Result<f64, IllConditioned> {
+        least(|ln| self.at(ln).and_then(|trial| trial.score()))
+    }
+
     fn at(&self, ln: f64) -> Option<Trial<N>> {
         let smoothed = self
             .smoother
@@ -231,15 +249,6 @@ impl<'a, const N: usize> Trials<'a, N> {
         let residuals = (0..n)
             .map(|i| self.residual(&trial.smoothed, i).norm())
             .collect::<Vec<_>>();
-        let own = |i: usize| {
-            let left = (1.0 - trial.smoothed.leverages[i + self.repeated]).max(1e-3);
-            error * (left / self.data.weights[i]).sqrt()
-        };
-        let studentised = residuals
-            .iter()
-            .enumerate()
-            .map(|(i, r)| r / own(i))
-            .collect();
         let curve = match self.data.period {
             None => trial.smoothed.curve(),
             Some(_) => trial.smoothed.lap(self.repeated, n),
@@ -249,10 +258,20 @@ impl<'a, const N: usize> Trials<'a, N> {
             Some(_) => None,
         };
         let spread = Spread {
-            posterior: trial.smoothed.posterior,
+            posterior: trial.smoothed.posterior.clone(),
             variance: error * error,
             ends,
         };
+        // Near the ends the curve is off by its bias, which is no fault of the points.
+        let own = |i: usize| {
+            let left = (1.0 - trial.smoothed.leverages[i + self.repeated]).max(LEAST_LEFT);
+            error * (left / self.data.weights[i]).sqrt()
+        };
+        let beyond_bias = |(i, r): (usize, &f64)| {
+            let bias = spread.bias(self.data.parameters[i], 0);
+            (r - bias).max(0.0) / own(i)
+        };
+        let studentised = residuals.iter().enumerate().map(beyond_bias).collect();
         Ok(Smooth {
             curve,
             spread,
@@ -325,3 +344,7 @@ impl Spread {
         error * ends.third[usize::from(d > 0.0)]
     }
 }
+
+#[cfg(test)]
+#[allow(clippy::unwrap_used)]
+mod tests;

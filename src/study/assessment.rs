@@ -76,10 +76,10 @@ pub struct SeatResult {
     pub seat: String,
     /// Unfiltered felt load by axis (x, y, z), g, at the seat's own stations.
     pub felt_g: [Option<Extremes>; 3],
-    /// In order of envelope and rule: the rules that are about this seat under this scenario, and those
     /// The largest half-width that the geometry's uncertainty gives any of its loads, g, where there
     /// is any.
     pub margin_g: Option<At>,
+    /// In order of envelope and rule: the rules that are about this seat under this scenario, and those
     /// about the speed of the train, which are the same in every seat.
     pub rules: Vec<RuleResult>,
 }

@@ -12,9 +12,9 @@ pub(super) fn of(plan: &Plan<'_>, cases: &[Case]) -> Vec<String> {
         "The results hold only for the envelopes given; they defer to the applicable standard, the local \
          code and the judgement of a licensed engineer."
             .to_owned(),
-        "The band of a utilisation holds the error of numerics and, where a track comes from points, two \
-         standard deviations of what their error leaves open. It does not hold what masses, friction, air or \
-         the build of the ride leave open: vary them in scenarios."
+        "The band of a load's utilisation holds the error of numerics and, where a track comes from points, \
+         two standard deviations of what their error leaves open; that of a speed the error of numerics alone. \
+         No band holds what masses, friction, air or the build of the ride leave open: vary them in scenarios."
             .to_owned(),
     ];
     cautions.extend(illustrative(plan));
@@ -129,7 +129,7 @@ fn worst_margin(design: &Design<'_>, cases: &[Case]) -> Option<At> {
 fn points(design: &Design<'_>, worst: Option<At>) -> Option<String> {
     let track = &design.variant.track.name;
     let report = design.spine.fit()?;
-    let (Some(error_m), Some(worst)) = (report.error_m, worst) else {
+    let Some(error_m) = report.error_m else {
         return Some(format!(
             "The point table of the track `{track}` is taken as exact: errors of its points go into the \
              loads and are not assessed."
@@ -137,14 +137,23 @@ fn points(design: &Design<'_>, worst: Option<At>) -> Option<String> {
     };
     let error = format!("{} mm", short(1e3 * error_m));
     let found = match report.method {
-        FitMethod::Exact => format!("interpolated as if exact; their rounding alone, {error},"),
+        FitMethod::Exact => format!("interpolated; their error or rounding, {error},"),
         FitMethod::Within => format!("smoothed to the stated error of {error}, which"),
         FitMethod::Grid => format!("smoothed to the rounding of their decimals, {error}, which"),
         FitMethod::CrossValidated => {
             format!("smoothed by cross-validation to an error of {error}, which")
         }
     };
-    let (g, at_m) = (short(worst.value), worst.station_m);
+    let Some(At {
+        value,
+        station_m: at_m,
+    }) = worst
+    else {
+        return Some(format!(
+            "The points of the track `{track}` are {found} could not be held against a run."
+        ));
+    };
+    let g = short(value);
     Some(format!(
         "The points of the track `{track}` are {found} leaves up to ±{g} g in a load (two standard \
          deviations, at {at_m:.1} m)."

@@ -114,7 +114,8 @@ impl Way<'_> {
     ///
     /// What the filter makes before its delay has passed belongs to the first instant of the ride.
     fn delayed(&self, visit: Stretch) -> Option<Stretch> {
-        let last = (self.station_m.len() - 1) as f64;
+        // The record goes on for the delay, so that the end of the ride is seen in full.
+        let last = (self.station_m.len() - 1) as f64 + self.delay.ceil();
         let from = if visit.from > 0.0 {
             visit.from + self.delay
         } else {

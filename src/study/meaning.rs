@@ -7,7 +7,8 @@ use std::collections::BTreeSet;
 use super::plan::{Design, Plan};
 use super::selection::suggest;
 use crate::diagnostic::Diagnostic;
-use crate::input::{Goal, Rule, Scenario, Zone};
+use crate::input::{Goal, PointTable, Rule, Scenario, TrackSource, Zone};
+use crate::spine::{Outlier, understated_error};
 
 /// All mistakes of a plan.
 pub(super) fn check(plan: &Plan<'_>) -> Vec<Diagnostic> {
@@ -17,6 +18,7 @@ pub(super) fn check(plan: &Plan<'_>) -> Vec<Diagnostic> {
         mistakes.extend(check_finish(goal, scenario));
     }
     for design in &plan.variants {
+        mistakes.extend(check_blunders(design));
         mistakes.extend(check_goal(goal, design));
         let envelopes = plan.study.envelopes.iter();
         let rules = envelopes.flat_map(|envelope| &envelope.rules);
@@ -56,6 +58,69 @@ fn check_stations(rule: &Rule, design: &Design<'_>) -> Vec<Diagnostic> {
         .hint("a stretch across the seam ends at a lower station than it begins")
     };
     beyond.map(mistake).collect()
+}
+
+/// Rows far off the curve that are told one by one, farthest first.
+const BLUNDERS_SHOWN: usize = 5;
+
+/// One row in so many may be a blunder; where there are more, the stated error is to blame.
+const ROWS_A_BLUNDER: usize = 20;
+
+/// Points too far from the curve for their error: they bend it, and nobody has said they should.
+fn check_blunders(design: &Design<'_>) -> Vec<Diagnostic> {
+    let (TrackSource::Points(table), Some(report)) =
+        (&design.variant.track.source, design.spine.fit())
+    else {
+        return Vec::new();
+    };
+    let mut blunders = report.blunders.clone();
+    blunders.sort_by(|a, b| b.studentised.total_cmp(&a.studentised));
+    let too_many = blunders.len() * ROWS_A_BLUNDER > table.len();
+    let told = blunders.iter().take(BLUNDERS_SHOWN);
+    let mut mistakes: Vec<_> = told
+        .map(|blunder| off_the_curve(table, blunder, too_many))
+        .collect();
+    if let Some(more @ 1..) = blunders.len().checked_sub(BLUNDERS_SHOWN) {
+        let message =
+            format!("{more} more rows of this table lie too far from the curve for their error");
+        let hint = "`crestfall spine` lists them all";
+        mistakes.push(Diagnostic::error(message).at(&table.place).hint(hint));
+    }
+    mistakes.extend(understated_error(table, report).map(|sizes| error_too_small(table, sizes)));
+    mistakes
+}
+
+/// The curve follows the noise of its points, and no margin would tell.
+fn error_too_small(table: &PointTable, (stated_m, found_m): (f64, f64)) -> Diagnostic {
+    Diagnostic::error(format!(
+        "the stated error makes {:.2} mm of a point of the centre line, and the points show {:.2} mm",
+        1e3 * stated_m,
+        1e3 * found_m
+    ))
+    .at(&table.place)
+    .hint("state a larger error or use `fit: auto`; `crestfall spine` shows rows that stick out")
+    .hint("where points lie metres apart, give them closer together")
+}
+
+fn off_the_curve(table: &PointTable, blunder: &Outlier, too_many: bool) -> Diagnostic {
+    let row = blunder.row;
+    let mistake = Diagnostic::error(format!(
+        "row {row} lies {:.1} mm from the curve, {:.0} times its error",
+        1e3 * blunder.residual_m,
+        blunder.studentised
+    ))
+    .at(&table.row_place(blunder.point));
+    if too_many {
+        return mistake.hint("so many rows are like this that the stated error is too small");
+    }
+    mistake
+        .hint(format!(
+            "correct the row, or leave it out with `except: [{row}]` and say why in a comment"
+        ))
+        .hint(
+            "where a straight meets an arc at once, or points lie far apart in a sharp bend, no row is \
+             wrong: give points closer together, or larger errors there in a column `error_mm`",
+        )
 }
 
 fn check_finish(goal: &Goal, scenario: &Scenario) -> Option<Diagnostic> {

@@ -86,10 +86,13 @@ fn compared(
             for axis in 0..3 {
                 for i in 0..count {
                     let difference_g = (a[axis][i] - b[axis][i]).abs();
+                    if !difference_g.is_finite() {
+                        numerics.load_g = f64::INFINITY;
+                    }
                     if difference_g <= numerics.load_g {
                         continue;
                     }
-                    let at_jump = difference_g > CLOSE_LOOK_G && i > 0 && {
+                    let at_jump = difference_g > CLOSE_LOOK_G && i * stride >= 2 && {
                         let around = fine.picked(i * stride - 2..=i * stride + 2);
                         jumps(&of(&design.poses, &around).seats[seat][axis])
                     };

@@ -46,7 +46,8 @@ impl TrainRecord {
             time_s: reversal.time_s,
             station_m: reversal.station_m,
             speed_m_s: 0.0,
-            is_stop: true,
+            // A train that sets off backward has not stopped before.
+            is_stop: reversal.time_s > 0.0,
         });
         let mut nodes: Vec<Node> = sampled
             .chain(reversals)
@@ -71,7 +72,7 @@ fn end(history: &History<'_>, goal: &Goal) -> Node {
     let state = history.state_at(history.duration_s);
     let speed_m_s = state.map_or(0.0, |state| state.speed_m_s);
     let is_stop = match history.end {
-        RunEnd::Stalled => true,
+        RunEnd::Stalled => history.duration_s > 0.0,
         RunEnd::Completed => matches!(goal, Goal::Finish { .. }),
         RunEnd::RolledBack => speed_m_s.abs() <= REST_M_S,
         RunEnd::Overran | RunEnd::TimeLimit => false,

@@ -37,7 +37,8 @@ impl<'a> PartsAt<'a> {
         let memory = (loads::memory_s(view.filter, record.rate_hz) * record.rate_hz).ceil();
         let first = (position.floor() - memory).max(0.0) as usize;
         let mut parts = [const { Vec::new() }; 3];
-        for sample in first..=position.ceil() as usize {
+        let last = view_of.station_m.len() - 1;
+        for sample in (first..=position.ceil() as usize).map(|sample| sample.min(last)) {
             let unfiltered_g = unfiltered_parts_g(view_of, view.gravity, axis, sample);
             for (part, value_g) in parts.iter_mut().zip(unfiltered_g) {
                 part.push(value_g);

@@ -1,9 +1,6 @@
 //! Where axles, cars and seats of a train stand when it is laid out straight.
 
-use crate::input::{Riders, Seat, Train};
-
-/// Axles of neighbouring cars closer than this are one axle, m.
-const SHARED_AXLE_M: f64 = 1e-3;
+use crate::input::{Riders, SHARED_AXLE_M, Seat, Train};
 
 /// Nominal places, m behind the first axle.
 #[derive(Clone, Debug, PartialEq)]

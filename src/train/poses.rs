@@ -44,7 +44,7 @@ pub struct Poses {
     last_m: f64,
     /// Length of a closed spine.
     lap_m: Option<f64>,
-    /// Where an axle meets a break of the spine, increasing; a closed spine has none.
+    /// Both ends, and where an axle meets a break of the spine, increasing.
     breaks_m: Vec<f64>,
     /// How far the spine may be off, every [`MARGIN_STEP_M`]; empty where that is not known.
     margins: Vec<Margin>,
@@ -111,11 +111,18 @@ impl Poses {
             chain.leading_m(last_axle, 0.0)?
         };
         let last_m = spine.length_m();
+        // A train as long as a closed track would bite its tail.
+        let (train_m, track_m) = (layout.length_m(), last_m);
+        if train_m >= track_m {
+            return Err(PoseError::TrainTooLong { train_m, track_m });
+        }
+        // The last axle at the start puts the first one off the end only round bends too sharp for it.
         if first_m >= last_m {
-            let train_m = layout.length_m();
-            return Err(PoseError::TrainTooLong {
-                train_m,
-                track_m: last_m,
+            let (axle, spacing_m, station_m) = (last_axle + 1, train_m, last_m);
+            return Err(PoseError::NoPlaceForAxle {
+                axle,
+                spacing_m,
+                station_m,
             });
         }
         let knots = knots(spine, &chain, &layout, (first_m, last_m))?;
@@ -162,16 +169,6 @@ impl Poses {
         let from = self.breaks_m.partition_point(|&q| q <= a.min(b));
         let to = self.breaks_m.partition_point(|&q| q < a.max(b));
         &self.breaks_m[from..to.max(from)]
-    }
-
-    /// Length of the spine, m.
-    pub fn track_length_m(&self) -> f64 {
-        self.last_m
-    }
-
-    /// Number of cars.
-    pub fn car_count(&self) -> usize {
-        self.cars.len()
     }
 
     /// Number of axles, shared ones counted once.

@@ -1,12 +1,14 @@
 //! The commands as a user meets them: files in, text and exit status out.
 
 mod check;
+mod close_call;
 mod export;
 mod faults;
 mod fixture;
 mod new;
 mod rules;
 mod speed_rules;
+mod spine;
 mod wrong_input;
 
 use std::io::Read;

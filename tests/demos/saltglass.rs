@@ -1,4 +1,4 @@
-//! Saltglass: `as-drawn` leaves the envelopes in three ways, `eased` in none.
+//! Saltglass: `as-drawn` leaves the envelopes in three ways, `eased` in none. For `as-built` see `as_built.rs`.
 
 use std::collections::BTreeSet;
 

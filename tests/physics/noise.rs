@@ -210,7 +210,7 @@ fn interior(survey: Survey) -> Layer {
 /// Points rounded to 1 mm every 0.25 m, common in CAD output: interpolated they make several g of
 /// noise; the fits bring it below what is asked of them.
 #[test]
-fn exact_points_rounded_to_a_millimetre() {
+fn measured_points_rounded_to_a_millimetre() {
     let exact = interior(Survey {
         fit: Fit::Exact,
         ..SURVEY
@@ -233,7 +233,7 @@ fn exact_points_rounded_to_a_millimetre() {
 /// The table of README: run with `--nocapture` to print it.
 #[test]
 #[expect(clippy::print_stdout, reason = "the table is made to be read")]
-fn exact_table_of_fits() {
+fn measured_table_of_fits() {
     println!("| points | spacing | exact rms, worst | within | auto |");
     let kinds = [
         Spoilt::Rounded(0.001),
@@ -281,7 +281,7 @@ fn exact_table_of_fits() {
 /// `auto` takes the grid where the residuals bear it out, and not where the points are worse than
 /// their last digit.
 #[test]
-fn exact_auto_tells_rounding_from_survey_noise() {
+fn measured_auto_tells_rounding_from_survey_noise() {
     let report = |survey: Survey| survey.spine(3).fit().unwrap().clone();
     let rounded = report(SURVEY);
     assert_eq!(rounded.method, FitMethod::Grid);
@@ -327,17 +327,17 @@ const SHORT: Survey = Survey {
 };
 
 #[test]
-fn exact_margins_hold_for_rounding_stated() {
+fn measured_margins_hold_for_rounding_stated() {
     assert_honest(SHORT.within());
 }
 
 #[test]
-fn exact_margins_hold_for_rounding_found() {
+fn measured_margins_hold_for_rounding_found() {
     assert_honest(SHORT);
 }
 
 #[test]
-fn exact_margins_hold_for_noise_stated() {
+fn measured_margins_hold_for_noise_stated() {
     assert_honest(
         Survey {
             spoilt: Spoilt::Gaussian(0.002),
@@ -348,7 +348,7 @@ fn exact_margins_hold_for_noise_stated() {
 }
 
 #[test]
-fn exact_margins_hold_for_noise_found() {
+fn measured_margins_hold_for_noise_found() {
     assert_honest(Survey {
         spoilt: Spoilt::Gaussian(0.002),
         ..SHORT

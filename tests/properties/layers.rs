@@ -27,7 +27,10 @@ const MAY_USE: [(&str, &[&str]); 10] = [
             "input",
         ],
     ),
-    ("report", &["study", "envelope", "motion", "input", "loads"]),
+    (
+        "report",
+        &["study", "envelope", "motion", "input", "loads", "spine"],
+    ),
 ];
 
 /// What a stage may take from `input`, where it may not know all of it.

@@ -109,14 +109,14 @@ fn a_run_that_broke_off_has_not_missed_its_stop() {
     let required = bounds(None, None, Some(Stop::Required));
     let open = judged(required, &speeds, &[], &[], &run);
     assert_eq!(open.outcome, Outcome::NotAssessed);
-    let passed = judged(
+    let through = judged(
         required,
         &speeds,
         &[],
         &[Stretch { from: 0.0, to: 1.0 }],
         &run,
     );
-    assert_eq!(passed.outcome, Outcome::Outside);
+    assert_eq!(through.outcome, Outcome::Outside);
 }
 
 #[test]

@@ -11,10 +11,10 @@ use crestfall::study::{Selection, assess};
 use crestfall::train::Poses;
 use serde_json::Value;
 
-/// Tolerances of the reference: m/s, g, and of utilisations.
-const SPEED_M_S: f64 = 2e-4;
-const FELT_G: f64 = 2e-3;
-const UTILISATION: f64 = 2e-3;
+/// Tolerances, m/s, g, and of utilisations: the reference itself asks for 2e-4, 2e-3 and 2e-3.
+const SPEED_M_S: f64 = 2e-6;
+const FELT_G: f64 = 2e-5;
+const UTILISATION: f64 = 1e-5;
 
 fn folder() -> &'static Path {
     Path::new(concat!(
@@ -85,7 +85,7 @@ fn assert_near(found: f64, expected: f64, tolerance: f64, what: &str) {
 
 /// Speed at 60 stations; the same at the same time, which the reference also gives.
 #[test]
-fn published_speeds_of_the_composite_ride() {
+fn independent_speeds_of_the_composite_ride() {
     each_case(|_, _, history, expected| {
         assert_eq!(history.end, RunEnd::Completed);
         assert_near(
@@ -106,7 +106,7 @@ fn published_speeds_of_the_composite_ride() {
 
 /// Felt loads of every seat at 60 stations.
 #[test]
-fn published_felt_loads_of_the_composite_ride() {
+fn independent_felt_loads_of_the_composite_ride() {
     each_case(|study, poses, history, expected| {
         let at = states(history, &numbers(&expected["time"]));
         for (car, entry) in study.variants[0].train.cars.iter().enumerate() {
@@ -134,7 +134,7 @@ fn published_felt_loads_of_the_composite_ride() {
 
 /// Largest and smallest load of every seat over the run at 500 Hz, unfiltered and filtered.
 #[test]
-fn published_extremes_of_the_composite_ride() {
+fn independent_extremes_of_the_composite_ride() {
     each_case(|study, poses, history, expected| {
         let samples = history.samples(study.rate_hz);
         for (car, entry) in study.variants[0].train.cars.iter().enumerate() {
@@ -167,7 +167,7 @@ fn published_extremes_of_the_composite_ride() {
 
 /// Utilisation of every rule in every seat and scenario.
 #[test]
-fn published_utilisations_of_the_composite_ride() {
+fn independent_utilisations_of_the_composite_ride() {
     let study = read_study(&folder().join("study.study.yaml")).unwrap();
     let assessment = assess(&study, &Selection::default(), &|_, _| ()).unwrap();
     let mut compared = 0;

@@ -73,11 +73,8 @@ fn lowered_filter(
         WordOr::Word(FilterWord::None) => return Some(Filter::None),
         WordOr::Keys(keys) => keys,
     };
-    let later = [keys.bessel, keys.chebyshev, keys.moving_average];
-    let has_later = later.iter().any(Option::is_some);
-    for family in later {
-        lower.later(family);
-    }
+    let has_later = keys.moving_average.is_some();
+    lower.later(keys.moving_average);
     match keys.butterworth {
         Some(butterworth) => lowered_butterworth(butterworth.given()?, lower),
         None if has_later => None,

@@ -7,15 +7,12 @@ use crate::input::field::{At, Field, Located, optional};
 use crate::input::lower::{Lower, Names};
 use crate::input::quantity::Quantity;
 use crate::input::written::train::{CarKeys, InertiaKeys, OffsetKeys, SeatKeys, TrainFile};
-use crate::input::{Car, Inertia, Seat, Train};
+use crate::input::{Car, Inertia, SHARED_AXLE_M, Seat, Train};
 
 /// Most cars that are read.
 const CARS: u64 = 1000;
 /// Most seats of a car.
 const SEATS: usize = 100;
-/// Axles of neighbouring cars nearer than this are one shared axle, m.
-const SHARED_AXLE_M: f64 = 0.001;
-
 /// A train from its file.
 pub(in crate::input) fn train(file: Located<TrainFile>, lower: &mut Lower) -> Option<Train> {
     let (root, file) = (file.at, file.value);
@@ -135,10 +132,10 @@ fn checked_axles(
 ) -> Option<[f64; 2]> {
     let (front, rear) = (axles.value.0.given()?, axles.value.1.given()?);
     let (front_m, rear_m) = (front.value.si, rear.value.si);
-    if front_m >= rear_m {
+    if rear_m - front_m <= SHARED_AXLE_M {
         let (front, rear) = (lower.text(&front.at), lower.text(&rear.at));
         let message = format!(
-            "found axles {front} and {rear} behind the nose, expected the front axle first"
+            "found axles {front} and {rear} behind the nose, expected the front axle first, and the rear one more than 1 mm behind it"
         );
         lower.error(&axles.at, message);
     } else if let Some(length_m) = length_m.filter(|length_m| *length_m > 0.0)

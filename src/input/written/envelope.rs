@@ -85,10 +85,6 @@ pub(in crate::input) struct FilterKeys {
     /// Butterworth low-pass.
     pub(in crate::input) butterworth: Option<Field<ButterworthKeys>>,
     #[schemars(skip)]
-    pub(in crate::input) bessel: Option<Field<Later>>,
-    #[schemars(skip)]
-    pub(in crate::input) chebyshev: Option<Field<Later>>,
-    #[schemars(skip)]
     pub(in crate::input) moving_average: Option<Field<Later>>,
 }
 
@@ -113,8 +109,6 @@ pub(in crate::input) struct ButterworthKeys {
 pub(in crate::input) enum PassesWord {
     /// Forward only.
     One,
-    #[schemars(skip)]
-    Two,
     #[schemars(skip)]
     ZeroPhase,
 }

@@ -12,12 +12,12 @@ const WIDTH: u16 = 100;
 const GLUE: char = '\u{a0}';
 
 /// Text that stays on one line.
-pub(super) fn glued(text: &str) -> String {
+pub(in crate::report) fn glued(text: &str) -> String {
     text.replace(' ', &GLUE.to_string())
 }
 
 /// A title and a table under it; nothing where there is no row.
-pub(super) fn section(title: &str, header: &[&str], rows: &[Vec<String>]) -> String {
+pub(in crate::report) fn section(title: &str, header: &[&str], rows: &[Vec<String>]) -> String {
     if rows.is_empty() {
         return String::new();
     }
@@ -56,12 +56,15 @@ fn longest_word(text: &str) -> usize {
 }
 
 /// A title and an item a text; nothing where there is no item.
-pub(super) fn list(title: &str, items: impl Iterator<Item = String>) -> String {
+pub(in crate::report) fn list(title: &str, items: impl Iterator<Item = String>) -> String {
     list_of_blocks(title, items.map(|item| vec![item]))
 }
 
 /// A title and an item a block: its first line, then lines set in under it.
-pub(super) fn list_of_blocks(title: &str, items: impl Iterator<Item = Vec<String>>) -> String {
+pub(in crate::report) fn list_of_blocks(
+    title: &str,
+    items: impl Iterator<Item = Vec<String>>,
+) -> String {
     let items: String = items.map(|lines| block(&lines)).collect();
     if items.is_empty() {
         return items;
@@ -77,7 +80,7 @@ fn block(lines: &[String]) -> String {
     lines.collect()
 }
 
-pub(super) fn wrapped(text: &str, first: &str, rest: &str) -> String {
+pub(in crate::report) fn wrapped(text: &str, first: &str, rest: &str) -> String {
     let options = Options::new(WIDTH.into())
         .initial_indent(first)
         .subsequent_indent(rest)
@@ -91,7 +94,7 @@ fn unglued(text: &str) -> String {
     text.replace(GLUE, " ")
 }
 
-pub(super) fn counted(count: usize, what: &str) -> String {
+pub(in crate::report) fn counted(count: usize, what: &str) -> String {
     match count {
         1 => format!("1 {what}"),
         _ => format!("{count} {what}s"),

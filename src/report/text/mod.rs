@@ -2,7 +2,7 @@
 
 mod cases;
 mod entry;
-mod layout;
+pub(super) mod layout;
 mod left_out;
 mod places;
 mod reading;
