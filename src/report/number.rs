@@ -33,7 +33,11 @@ pub(super) fn json_or_null(value: Option<f64>) -> Value {
 
 /// The same as plain text; empty where the number does not exist.
 pub(super) fn plain(value: f64) -> String {
-    rounded(value).map_or_else(String::new, |v| v.to_string())
+    rounded(value).map_or_else(String::new, |v| match v {
+        // Written out, rounding errors would make a file a third longer.
+        v if v != 0.0 && v.abs() < 1e-5 => format!("{v:e}"),
+        v => v.to_string(),
+    })
 }
 
 /// Nine significant digits, without a negative zero; `None` for what is no number.
@@ -87,6 +91,11 @@ pub(super) fn utilisation(value: f64) -> String {
         .map(|digits| format!("{value:.digits$}"))
         .find(|text| value == 1.0 || text.parse::<f64>().is_ok_and(|shown| shown != 1.0))
         .unwrap_or_else(|| value.to_string())
+}
+
+/// Whether people read a utilisation as nothing.
+pub(super) fn shows_as_zero(value: f64) -> bool {
+    value < 0.000_5
 }
 
 /// A utilisation and its band to the same place; a band that would show as nothing is left out.
@@ -254,6 +263,14 @@ mod tests {
         assert_eq!(json(-0.0).to_string(), "0.0");
         assert_eq!(json(f64::NAN), Value::Null);
         assert_eq!(json(f64::INFINITY), Value::Null);
+    }
+
+    #[test]
+    fn plain_numbers_stay_short() {
+        assert_eq!(plain(1.0 / 3.0), "0.333333333");
+        assert_eq!(plain(-6.186_817_211e-15), "-6.18681721e-15");
+        assert_eq!(plain(-0.0), "0");
+        assert_eq!(plain(f64::NAN), "");
     }
 
     #[test]

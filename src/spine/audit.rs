@@ -98,6 +98,14 @@ const OVERSTATED: f64 = 10.0;
 /// margin does not tell.
 const UNDERSTATED: f64 = 1.0 / 3.0;
 
+/// Gaps in the points of a track: nothing is known of it there, and no margin tells.
+pub fn gaps(table: &PointTable, spine: &Spine) -> Vec<Finding> {
+    match &spine.shape {
+        Shape::Fitted(fitted) => points::Survey::new(table, fitted).gaps(),
+        Shape::Elements(_) => Vec::new(),
+    }
+}
+
 /// Audits the spine of a track, with noise at a speed above 0.
 pub fn audit(track: &Track, spine: &Spine, speed_m_s: f64) -> Audit {
     let (corners, mut findings) = jumps::between_pieces(spine);

@@ -14,7 +14,7 @@ mod smooth;
 
 pub use audit::{
     Audit, Corners, Ends, Extreme, Extremes, Finding, FindingKind, Floor, Law, NoiseFloor, Points,
-    Range, Remedy, Spacing, WANTED_G, audit, understated_error,
+    Range, Remedy, Spacing, WANTED_G, audit, gaps, understated_error,
 };
 pub use margin::Margin;
 pub use point::SpinePoint;

@@ -8,7 +8,7 @@ use super::plan::{Design, Plan};
 use super::selection::suggest;
 use crate::diagnostic::Diagnostic;
 use crate::input::{Goal, PointTable, Rule, Scenario, TrackSource, Zone};
-use crate::spine::{Outlier, understated_error};
+use crate::spine::{Finding, Outlier, gaps, understated_error};
 
 /// All mistakes of a plan.
 pub(super) fn check(plan: &Plan<'_>) -> Vec<Diagnostic> {
@@ -86,8 +86,27 @@ fn check_blunders(design: &Design<'_>) -> Vec<Diagnostic> {
         let hint = "`crestfall spine` lists them all";
         mistakes.push(Diagnostic::error(message).at(&table.place).hint(hint));
     }
+    mistakes.extend(
+        gaps(table, &design.spine)
+            .iter()
+            .filter_map(|gap| in_the_dark(table, gap)),
+    );
     mistakes.extend(understated_error(table, report).map(|sizes| error_too_small(table, sizes)));
     mistakes
+}
+
+/// How the track runs over a gap is a guess that no margin holds.
+fn in_the_dark(table: &PointTable, gap: &Finding) -> Option<Diagnostic> {
+    let (row, width_m, usual_m) = (gap.row?, gap.size?, gap.against?);
+    let point = (0..table.len()).find(|&point| table.row_number(point) == row)?;
+    Some(
+        Diagnostic::error(format!(
+            "the next point is {width_m:.3} m from this one, where the points around lie {usual_m:.3} m apart: \
+             nothing is known of the track in between"
+        ))
+        .at(&table.row_place(point))
+        .hint("give the points in between; where the track is drawn there, take them from the drawing"),
+    )
 }
 
 /// The curve follows the noise of its points, and no margin would tell.

@@ -128,7 +128,7 @@ fn a_place_says_why_and_what_would_mend_it() {
     let ran = Fixture::valley().run(&["check", "ride.study.yaml"]);
     let lines = ran.out.lines().map(str::trim);
     let lines: Vec<_> = lines.skip_while(|l| !l.contains("(pull-out)")).collect();
-    assert!(lines[1].starts_with("worst: seat "), "{ran:?}");
+    assert!(lines[1].starts_with("worst: "), "{ran:?}");
     assert!(
         lines[2].starts_with("there: ") && lines[2].contains(" m/s, radius "),
         "{ran:?}"
@@ -146,7 +146,7 @@ fn each_variant_has_its_own_outcome_and_table() {
     let study = Fixture::valley();
     study.write(
         "eased.track.yaml",
-        "crestfall: 1\ntrack: Eased\nstart: {z: 30 m, heading: 90 deg, grade: -5 deg}\nelements:\n  - {name: run, length: 70 m}\n",
+        "crestfall: 1\ntrack: Eased\nstart: {z: 30 m, heading: 90 deg}\nelements:\n  - {name: run, length: 70 m, grade_to: -10 deg}\n",
     );
     study.replace(
         "ride.study.yaml",
@@ -322,6 +322,29 @@ fn a_run_that_stalls_is_not_assessed() {
         "{text:?}"
     );
     assert!(text.out.contains("stalled at"), "{text:?}");
+}
+
+/// What stalls in one scenario must not hide the worst of the others.
+#[test]
+fn what_is_not_assessed_has_a_row_of_its_own() {
+    let study = Fixture::valley();
+    study.replace(
+        "ride.operation.yaml",
+        "  empty: {riders: none, resistance: warm}",
+        "  empty: {riders: none, resistance: warm, release: {station: 8 m, speed: 0 m/s}}",
+    );
+    let ran = study.run(&["check", "ride.study.yaml"]);
+    let rows: Vec<_> = ran
+        .out
+        .lines()
+        .filter(|line| line.starts_with("  z-down "))
+        .collect();
+    assert_eq!(rows.len(), 2, "{ran:?}");
+    assert!(
+        rows[0].contains("outside") && rows[0].contains(", full"),
+        "{ran:?}"
+    );
+    assert!(rows[1].contains("not assessed"), "{ran:?}");
 }
 
 #[test]

@@ -179,13 +179,7 @@ fn extremes(audit: &Audit, units: Units) -> String {
     ];
     for (name, cells) in rows {
         if let Some(cells) = cells {
-            table.push(
-                [name.to_owned()]
-                    .into_iter()
-                    .chain(cells)
-                    .into_iter()
-                    .collect(),
-            );
+            table.push([name.to_owned()].into_iter().chain(cells).collect());
         }
     }
     section("extremes", &["", "largest", "at", "smallest", "at"], &table)

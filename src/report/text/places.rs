@@ -158,7 +158,7 @@ fn extent(finding: &Finding, units: Units) -> String {
 fn worst(place: &Place<'_>, units: Units) -> String {
     let finding = place.worst;
     let who = match &finding.rider {
-        Some(rider) => format!("seat {}-{}", rider.car, rider.seat),
+        Some(rider) => format!("{}-{}", rider.car, rider.seat),
         None => "train".to_owned(),
     };
     format!(

@@ -8,7 +8,7 @@ const AXES: &str = "Loads are those felt in the seat, filtered as the envelope s
 pushed forward by the back rest, +y pushed to the left by the side of the seat, +z pressed into the seat. \
 Upright and at rest with gravity included, z is +1 g.";
 
-const COLUMNS: &str = "`of limit` is the load over its limit: 1 is the limit, and \u{b1} is the band of what is uncertain. \
+const COLUMNS: &str = "`of limit` is the load over its limit: 1 is the limit, and ± is the band of what is uncertain. \
 `load` is what is held throughout `for`, not the peak. `at` is the station of the seat along the spine, midway between \
 the axles of its car.";
 

@@ -2,8 +2,8 @@
 
 use super::entry::{Entry, variants};
 use super::layout::{glued, section};
-use crate::envelope::{Outcome, Spell};
-use crate::report::number::{Units, seconds, utilisation_with_band};
+use crate::envelope::{Judgement, Outcome, Spell};
+use crate::report::number::{Units, seconds, shows_as_zero, utilisation_with_band};
 use crate::study::Assessment;
 
 const HEADER: [&str; 8] = [
@@ -33,9 +33,10 @@ pub(super) fn worst_of_each_rule(
 
 fn worst_row(worst: &Entry<'_>, units: Units) -> Vec<String> {
     let judgement = &worst.rule.judgement;
-    let spell = counted_spell(worst);
-    let held = spell.filter(|_| worst.is_felt());
     let used = judgement.utilisation;
+    let spell = shown_spell(judgement);
+    let held = spell.filter(|_| worst.is_felt());
+    let station_m = worst.rule.station_m.filter(|_| spell.is_some());
     vec![
         judgement.rule.clone(),
         judgement.outcome.to_string(),
@@ -43,26 +44,20 @@ fn worst_row(worst: &Entry<'_>, units: Units) -> Vec<String> {
         shown(spell.map(|s| units.measured(judgement.unit, s.load))),
         shown(spell.map(|s| units.measured(judgement.unit, s.limit))),
         shown(held.map(|s| seconds(s.duration_s))),
-        shown(spell.and(worst.rule.station_m).map(|m| units.station(m))),
-        place(worst),
+        shown(station_m.map(|m| units.station(m))),
+        spell.map_or_else(|| "-".to_owned(), |_| place(worst)),
     ]
 }
 
-/// A utilisation below this is printed as 0.
-const PRINTED_AS_NOTHING: f64 = 5e-4;
-
-/// What governs a rule, unless it is a trace of a load that would be printed as 0.
-fn counted_spell(worst: &Entry<'_>) -> Option<Spell> {
-    let spell = worst.rule.judgement.governing;
-    spell.filter(|spell| spell.utilisation >= PRINTED_AS_NOTHING)
+/// The governing spell, unless its load is nothing but rounding: nobody feels that.
+fn shown_spell(judgement: &Judgement) -> Option<Spell> {
+    let nothing = judgement.utilisation.is_some_and(shows_as_zero);
+    judgement.governing.filter(|_| !nothing)
 }
 
-/// Who feels it and when; nobody where no load counts.
+/// Who feels it and when.
 fn place(worst: &Entry<'_>) -> String {
-    match counted_spell(worst) {
-        Some(_) => format!("{}, {}", worst.seat_name(), worst.case.scenario),
-        None => "-".to_owned(),
-    }
+    format!("{}, {}", worst.seat_name(), worst.case.scenario)
 }
 
 fn shown(text: Option<String>) -> String {
@@ -75,7 +70,7 @@ fn shown(text: Option<String>) -> String {
 fn worst_entries<'a>(entries: impl Iterator<Item = Entry<'a>>) -> Vec<Entry<'a>> {
     let mut worst: Vec<Entry<'a>> = Vec::new();
     for entry in entries {
-        let held = |w: &&mut Entry<'_>| w.same_rule(&entry) && is_blank(w) == is_blank(&entry);
+        let held = |w: &&mut Entry<'_>| w.same_rule(&entry) && assessed(w) == assessed(&entry);
         match worst.iter_mut().find(held) {
             Some(held) if entry.is_worse_than(held) => *held = entry,
             Some(_) => {}
@@ -86,8 +81,6 @@ fn worst_entries<'a>(entries: impl Iterator<Item = Entry<'a>>) -> Vec<Entry<'a>>
     worst
 }
 
-/// Not assessed, and without any figure.
-fn is_blank(entry: &Entry<'_>) -> bool {
-    let judgement = &entry.rule.judgement;
-    judgement.outcome == Outcome::NotAssessed && judgement.governing.is_none()
+fn assessed(entry: &Entry<'_>) -> bool {
+    entry.rule.judgement.outcome != Outcome::NotAssessed
 }

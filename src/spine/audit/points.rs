@@ -106,6 +106,14 @@ impl<'a> Survey<'a> {
         spacings.chain(kinks).collect()
     }
 
+    /// Stretches without a point, far longer than the spacings around them.
+    pub(super) fn gaps(&self) -> Vec<Finding> {
+        let faults = (0..self.spacings_m.len()).filter_map(|i| self.spacing_fault(i));
+        faults
+            .filter(|fault| fault.kind == FindingKind::Gap)
+            .collect()
+    }
+
     /// The farthest from the curve, in order of their rows.
     pub(super) fn blunders(&self, report: &FitReport) -> Vec<Finding> {
         let finding = |o: &crate::spine::Outlier| {
