@@ -1,6 +1,8 @@
 //! The books of a run: what energy it had, what each force took or gave.
 
-use super::equation::{Law, Model};
+use std::cell::Cell;
+
+use super::equation::{Law, Model, Terms};
 use crate::numerics::quadrature::integrate_step;
 use crate::numerics::root::bracketed;
 
@@ -64,11 +66,16 @@ impl Books {
         (from_s, to_s): (f64, f64),
         state: impl Fn(f64) -> (f64, f64),
     ) {
+        // Energies at the nodes of the quadrature stand for those of the whole step.
+        let kinetic_j = Cell::new((f64::INFINITY, f64::NEG_INFINITY));
         let power = |t: f64| {
             let (q, v) = state(t);
-            powers(model, law, q, v)
+            let terms = model.terms(q, v);
+            let (kinetic, (smallest, largest)) = (terms.kinetic_j(v), kinetic_j.get());
+            kinetic_j.set((smallest.min(kinetic), largest.max(kinetic)));
+            powers(model, &terms, law, (q, v))
         };
-        let (from_m, (to_m, v)) = (state(from_s).0, state(to_s));
+        let (from_m, to_m) = (state(from_s).0, state(to_s).0);
         // Where poses bend suddenly, so does the force of a zone that keeps a speed.
         let passing = |&break_m: &f64| {
             bracketed(from_s, to_s, PASSING_TIME_S, |t| {
@@ -84,12 +91,15 @@ impl Books {
         cuts.sort_by(f64::total_cmp);
         for ends in cuts.windows(2) {
             let zero = Works::zero(self.works.zones.len());
-            let done = integrate_step(ends[0], ends[1], zero, power);
+            let done = integrate_step(ends[0], ends[1], zero, &power);
             let sum = std::mem::replace(&mut self.works, Works::zero(0));
             self.works = sum + done;
         }
-        let kinetic = model.terms(to_m, v).kinetic_j(v);
-        self.kinetic_j = (self.kinetic_j.0.min(kinetic), self.kinetic_j.1.max(kinetic));
+        let (smallest_j, largest_j) = kinetic_j.get();
+        self.kinetic_j = (
+            self.kinetic_j.0.min(smallest_j),
+            self.kinetic_j.1.max(largest_j),
+        );
     }
 
     /// Closes the books at a place and speed.
@@ -122,8 +132,7 @@ impl Books {
 }
 
 /// Power of each force, W.
-fn powers(model: &Model<'_>, law: &Law, q: f64, v: f64) -> Works {
-    let terms = model.terms(q, v);
+fn powers(model: &Model<'_>, terms: &Terms, law: &Law, (q, v): (f64, f64)) -> Works {
     let mut works = Works::zero(model.ride.scenario.zones.len());
     works.rolling = -law.direction * terms.rolling_n * v;
     works.air = terms.air_n * v;

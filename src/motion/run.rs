@@ -21,6 +21,8 @@ pub struct Settings {
     pub tolerance: f64,
     /// Longest step, s, so that no short feature of the track is stepped over.
     pub longest_step_s: f64,
+    /// Whether the works are booked; without them the ledger does not close.
+    pub books: bool,
 }
 
 impl Default for Settings {
@@ -28,6 +30,7 @@ impl Default for Settings {
         Self {
             tolerance: 1e-10,
             longest_step_s: 0.05,
+            books: true,
         }
     }
 }
@@ -180,7 +183,7 @@ impl<'a> Runner<'a> {
     fn record(&mut self, stretch: Stretch, to_s: f64, books: &mut Books) {
         let before = stretch.steps.iter().copied().filter(|&t| t < to_s);
         let steps = before.chain([to_s]).collect::<Vec<_>>();
-        for ends in steps.windows(2) {
+        for ends in steps.windows(2).filter(|_| self.settings.books) {
             books.add_step(&self.model, &self.law, (ends[0], ends[1]), |t| {
                 stretch.state(t)
             });

@@ -7,7 +7,7 @@ use crate::loads::{CarLoads, car_loads};
 use crate::motion::{History, Samples, Settings, simulate_with};
 
 /// Times a second at which the two solutions are compared.
-const COMPARED_HZ: f64 = 50.0;
+const COMPARED_HZ: f64 = 25.0;
 
 /// A difference beyond this is looked at closely: at a jump of the load, such as a brake letting go
 /// or the end of a ramp, it is one of time and not of load, g.
@@ -22,8 +22,8 @@ const CLOSE_RATE_HZ: f64 = 500.0;
 /// Steps of the coarser solution over those of the finer.
 pub(super) const COARSER: f64 = 2.0;
 
-/// Local error of the coarser solution over that of the finer: steps twice as long at order 5.
-const COARSER_TOLERANCE: f64 = 32.0;
+/// Local error of the coarser solution over that of the finer: steps four times as long at order 5.
+const COARSER_TOLERANCE: f64 = 1024.0;
 
 /// Differences between a solution and a coarser one, which are larger than the solution's own error.
 #[derive(Clone, Copy, Debug, Default, PartialEq)]
@@ -51,6 +51,7 @@ pub(super) fn estimate(
     let settings = Settings {
         tolerance: COARSER_TOLERANCE * fine.tolerance,
         longest_step_s: COARSER * fine.longest_step_s,
+        books: false,
     };
     let coarse = simulate_with(&ride, settings)
         .map_err(|error| format!("its coarser solution could not be made: {error}"))?;

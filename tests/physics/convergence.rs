@@ -62,6 +62,7 @@ fn converges_motion_in_the_tolerance() {
         let settings = Settings {
             tolerance,
             longest_step_s: 10.0,
+            books: true,
         };
         let history = simulate_with(&base, settings).unwrap();
         (history.duration_s, last(&history).speed_m_s)
@@ -88,6 +89,7 @@ fn converges_run_with_zones() {
     let best = Settings {
         tolerance: 1e-12,
         longest_step_s: 0.01,
+        books: true,
     };
     let exact = simulate_with(&base, best).unwrap();
     let default = simulate_with(&base, Settings::default()).unwrap();
