@@ -506,6 +506,11 @@ const NO_NOISE_1_M: f64 = 1e-6;
 /// (our choice: it is found to a tenth or better, see `tests/physics/noise.rs`).
 const LIKE_ROUNDING: f64 = 1.5;
 
+/// An error found by cross-validation below rounding by more than this tells that some coordinates sit
+/// on the grid by design and hold no error, as on a track along an axis: residuals that matched
+/// rounding in all of them would flatten the others.
+const BELOW_ROUNDING: f64 = 1.1;
+
 impl Knots {
     /// A curve as asked, with its error.
     fn laid<const N: usize>(
@@ -545,6 +550,10 @@ impl Knots {
         match (rounding, validated) {
             (Some(rounding), Ok(found)) if found.error > LIKE_ROUNDING * rounding => {
                 Ok(Laid::smooth(found, FitMethod::CrossValidated))
+            }
+            (Some(rounding), Ok(found)) if found.error < rounding / BELOW_ROUNDING => {
+                let rougher = data.cross_validated_for(rounding).map_err(drop)?;
+                Ok(Laid::smooth(rougher, FitMethod::Grid))
             }
             (Some(rounding), _) => Ok(Laid::smooth(
                 data.within(rounding).map_err(drop)?,

@@ -97,6 +97,13 @@ impl<const N: usize> Data<'_, N> {
         trials.smooth(ln, Some(error))
     }
 
+    /// The curve of the least generalized cross-validation score, with a known error of its points.
+    pub(super) fn cross_validated_for(&self, error: f64) -> Result<Smooth<N>, IllConditioned> {
+        let trials = Trials::new(self);
+        let ln = trials.cross_validated()?;
+        trials.smooth(ln, Some(error))
+    }
+
     /// The curve of the least generalized cross-validation score, which finds the error itself.
     pub(super) fn cross_validated(&self) -> Result<Smooth<N>, IllConditioned> {
         let trials = Trials::new(self);

@@ -134,3 +134,44 @@ fn an_outcome_of_a_part_says_so() {
         "{part}"
     );
 }
+
+/// A hill of 3 m, written down to 1 cm every half metre along the x axis: x and y are exact, so that all of
+/// the rounding is in z, and a curve as smooth as the rounding of three coordinates allows is too flat.
+/// What is felt on the hill of the exact table must lie within the band (closed form: a Gaussian).
+#[test]
+fn the_band_holds_what_smoothing_flattens() {
+    let study = Fixture::level();
+    study.write(
+        "ride.track.yaml",
+        "crestfall: 1\ntrack: Hill\npoints: {file: hill.csv, fit: auto}\n",
+    );
+    study.replace("ride.operation.yaml", "speed: 10 m/s", "speed: 20 m/s");
+    study.replace("ride.operation.yaml", "running: 0,", "running: 0.001,");
+    study.replace(
+        "ride.envelope.yaml",
+        "sign: positive, limits: {0.2 s: 3.0, 4 s: 3.0, 12 s: 2.0}, between: linear",
+        "floor: {0.2 s: -1}",
+    );
+    let judged = |decimals: usize, step_m: f64| {
+        let mut table = "x_m,y_m,z_m,bank_left_deg\n".to_owned();
+        for i in 0..=(100.0 / step_m) as u32 {
+            let x = f64::from(i) * step_m;
+            let z = 3.0 * (-((x - 50.0) / 10.0).powi(2)).exp();
+            table += &format!(
+                "{x:.decimals$},{:.decimals$},{z:.decimals$},0.0000001\n",
+                0.0
+            );
+        }
+        study.write("hill.csv", &table);
+        let ran = study.run(&["check", "ride.study.yaml", "--format", "json"]);
+        let rule = ran.json()["cases"][0]["seats"][0]["rules"][0].clone();
+        let number = |key: &str| rule[key].as_f64().expect("a number");
+        (number("utilisation"), number("band"))
+    };
+    let (exact, _) = judged(12, 0.25);
+    for (decimals, step_m) in [(2, 0.5), (3, 0.25)] {
+        let (rounded, band) = judged(decimals, step_m);
+        assert!(exact <= rounded + band, "{exact} {rounded} ± {band}");
+        assert!(band < 0.2, "{band}");
+    }
+}
