@@ -27,6 +27,7 @@ pub(super) fn of(plan: &Plan<'_>, cases: &[Case]) -> Vec<String> {
     }
     cautions.extend(without_rules(plan));
     for design in &plan.variants {
+        cautions.extend(upside_down(plan, design));
         let of_variant = [
             points(design, worst_margin(design, cases)),
             no_inertia(design),
@@ -142,6 +143,20 @@ fn without_rules(plan: &Plan<'_>) -> Option<String> {
             "No rule is about {bare} of the {all} seats of all cases: what is felt there is not assessed."
         )
     })
+}
+
+/// A train released head down: more likely than not left and right have been exchanged.
+fn upside_down(plan: &Plan<'_>, design: &Design<'_>) -> Option<String> {
+    let mut releases = plan
+        .scenarios
+        .iter()
+        .map(|scenario| scenario.release.station_m);
+    let at_m = releases.find(|&at_m| design.spine.at(at_m).up.value.z < 0.0)?;
+    Some(format!(
+        "At the release, {at_m} m, the track of variant `{}` lies upside down: look whether left and right \
+         (rails, bank) are exchanged.",
+        design.variant.name
+    ))
 }
 
 /// The largest half-width that the geometry gives any load of a variant.

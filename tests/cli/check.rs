@@ -422,3 +422,16 @@ fn a_low_rate_with_a_jump_at_the_start() {
     let ran = study.run(&["check", "ride.study.yaml", "--format", "json"]);
     assert!(ran.status.is_some_and(|status| status < 2), "{ran:?}");
 }
+
+/// A ride whose rails are exchanged runs head down; its reader is told.
+#[test]
+fn a_release_head_down_is_told() {
+    let study = Fixture::level();
+    study.replace(
+        "ride.track.yaml",
+        "heading: 90 deg}",
+        "heading: 90 deg, bank: 180 deg left}",
+    );
+    let ran = study.run(&["check", "ride.study.yaml"]);
+    assert!(ran.out.contains("lies upside down"), "{ran:?}");
+}
