@@ -91,7 +91,7 @@ impl Books {
         cuts.sort_by(f64::total_cmp);
         for ends in cuts.windows(2) {
             let zero = Works::zero(self.works.zones.len());
-            let done = integrate_step(ends[0], ends[1], zero, &power);
+            let done = integrate_step(ends[0], ends[1], zero, power);
             let sum = std::mem::replace(&mut self.works, Works::zero(0));
             self.works = sum + done;
         }
