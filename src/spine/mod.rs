@@ -1,7 +1,7 @@
 //! The spine: the reference curve midway between the running rails, at rail height.
 //!
 //! A spine gives position r(s), tangent t = r′ and up vector u(s) by station s, its arc length,
-//! from design elements ([`elements`]) or from points ([`fit`]). It knows no train and no time.
+//! from design elements (`elements`) or from points (`fit`). It knows no train and no time.
 
 mod audit;
 mod ease;

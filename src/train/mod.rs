@@ -1,7 +1,7 @@
 //! The train: cars on axles chained along the spine, as functions of the leading axle's station q.
 //!
 //! Poses are worked out on a grid in q once per track and train, with exact derivatives at the
-//! nodes, and run as quintics in between ([`poses`]).
+//! nodes, and run as quintics in between (`poses`).
 
 mod chain;
 mod layout;
